@@ -2,6 +2,7 @@
 import { sql } from 'drizzle-orm';
 import { bigint, check, doublePrecision, foreignKey, index, integer, jsonb, pgEnum, pgTable, text, timestamp, unique, uuid } from 'drizzle-orm/pg-core';
 import type { ReadingWarning, RecordedDevice } from '../../../formats/recording';
+import type { ImportQuestion } from '../../../import/question';
 import { bytea, createdAt, float64Column, id } from './columns';
 import { deviceModels, deviceUnits } from './device';
 import { sessions } from './session';
@@ -46,9 +47,11 @@ export const uploads = pgTable(
 		state: uploadStateEnum('state').notNull().default('waiting'),
 		/** Share of the reading done, 0 to 1. */
 		progress: doublePrecision('progress').notNull().default(0),
-		/** For `refused` and `asking`: a stable code and the sentence shown. */
+		/** A stable code and the sentence shown: why it is refused, what is asked, or where it was put and why. */
 		messageCode: text('message_code'),
 		message: text('message'),
+		/** For `asking`: what the buttons need. */
+		question: jsonb('question').$type<ImportQuestion>(),
 		recordingId: uuid('recording_id'),
 		createdAt: createdAt(),
 		finishedAt: timestamp('finished_at', { withTimezone: true })
@@ -60,7 +63,8 @@ export const uploads = pgTable(
 		foreignKey({ columns: [t.teamId, t.rawFileId], foreignColumns: [rawFiles.teamId, rawFiles.id], name: 'upload_raw_same_team' }),
 		foreignKey({ columns: [t.recordingId], foreignColumns: [recordings.id], name: 'upload_recording' }).onDelete('set null'),
 		check('upload_progress', sql`${t.progress} between 0 and 1`),
-		check('upload_refused_says_why', sql`${t.state} <> 'refused' or ${t.message} is not null`)
+		check('upload_refused_says_why', sql`${t.state} <> 'refused' or ${t.message} is not null`),
+		check('upload_asks_something', sql`(${t.state} = 'asking') = (${t.question} is not null)`)
 	]
 );
 

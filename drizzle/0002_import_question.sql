@@ -1,0 +1,2 @@
+ALTER TABLE "upload" ADD COLUMN "question" jsonb;--> statement-breakpoint
+ALTER TABLE "upload" ADD CONSTRAINT "upload_asks_something" CHECK (("upload"."state" = 'asking') = ("upload"."question" is not null));
