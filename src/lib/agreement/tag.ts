@@ -10,7 +10,20 @@ export type TagTreatment = 'in' | 'out';
 export type TagBlame = 'reference' | 'wearable' | 'neither';
 
 /** Texture of a kind on lanes and in rules (never a colour). */
-export const TEXTURES = ['flat', 'hatch', 'bars', 'levels', 'empty', 'slant', 'dots', 'cross', 'zigzag', 'peaks', 'steps', 'grid'] as const;
+export const TEXTURES = [
+	'flat',
+	'hatch',
+	'bars',
+	'levels',
+	'empty',
+	'slant',
+	'dots',
+	'cross',
+	'zigzag',
+	'peaks',
+	'steps',
+	'grid'
+] as const;
 export type Texture = (typeof TEXTURES)[number];
 
 export interface TagKind {
