@@ -42,6 +42,11 @@ export interface Trace {
 	kind: ChannelKind;
 	tS: Float64Array;
 	value: Float64Array;
+	/**
+	 * What the file held for this channel before values that share a time stamp were merged; set by the readers.
+	 * Counts values that are neither empty nor 0 (0 counts for altitude and temperature, where it is a value like any other).
+	 */
+	inFile?: { n: number; min: number; max: number };
 }
 
 export type FileFormat = 'fit' | 'tcx' | 'gpx' | 'csv' | 'rr-text';
@@ -52,6 +57,34 @@ export interface RecordedDevice {
 	product: string | null;
 	serial: string | null;
 	firmware: string | null;
+}
+
+/** Nothing is known about the device. */
+export const UNKNOWN_DEVICE: RecordedDevice = { maker: null, product: null, serial: null, firmware: null };
+
+/** One of several heart-rate sources in one file, to choose from with `ReadOptions.heartRateSource`. */
+export interface HeartRateSource {
+	/** Stable within the file: `record`, `developer`, `stored-beats`, a column name. */
+	key: string;
+	/** How the file names it. */
+	label: string;
+	n: number;
+	min: number;
+	max: number;
+}
+
+/** What the one who imports knows and the file does not say. */
+export interface ReadOptions {
+	/** Which of several heart-rate sources becomes the heart-rate channel; default the file's main one. */
+	heartRateSource?: string;
+	/** Seconds that the file's clock is ahead of UTC, used for time stamps that carry no zone; default 0 with a warning. */
+	utcOffsetS?: number;
+	/** Start in epoch seconds for files that hold only elapsed seconds or times of day. */
+	startS?: number;
+	/** The present in epoch seconds; later time stamps are warned of. Without it only dates past 2100 are. */
+	nowS?: number;
+	/** Upper bound of what a compressed file may unpack to, bytes; default 200 MB. */
+	maxUnpackedBytes?: number;
 }
 
 /** Something odd that the reader met and how it dealt with it. */
@@ -71,10 +104,14 @@ export interface Recording {
 	device: RecordedDevice;
 	/** The file's own word for the activity, lower case, or null. */
 	activity: string | null;
-	/** First and last time stamp of any channel, epoch seconds on the device's clock. */
+	/** First and last time stamp of any record or channel, epoch seconds on the device's clock. */
 	startS: number;
 	endS: number;
 	traces: Trace[];
+	/** Heart-rate sensors that the file lists as connected, so that a relayed strap can be recognised; absent where it lists none. */
+	heartRateSensors?: RecordedDevice[];
+	/** Present where the file holds more than one heart-rate source: the first is the one in `traces`. */
+	heartRateSources?: HeartRateSource[];
 	warnings: ReadingWarning[];
 }
 
