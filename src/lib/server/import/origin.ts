@@ -4,7 +4,7 @@
  */
 import type { Recording } from '../../formats/recording';
 
-type Origin = Pick<Recording, 'device' | 'format'>;
+type Origin = Pick<Recording, 'device'> & { format: string };
 
 /** Bytes at the start of a table in which its header line is looked for. */
 const HEADER_WINDOW_BYTES = 4096;
