@@ -1,0 +1,23 @@
+import { json } from '@sveltejs/kit';
+import { z } from 'zod';
+import { authorise } from '$lib/server/auth/actor';
+import { requireActor } from '$lib/server/auth/require';
+import { placementEnum } from '$lib/server/db/schema';
+import { endpoint } from '$lib/server/http/endpoint';
+import { addDevice } from '$lib/server/import/add-device';
+import { studyBySlug } from '$lib/server/import/study';
+
+const Device = z.object({
+	name: z.string().trim().min(1).max(80),
+	shortName: z.string().trim().max(20).optional(),
+	role: z.enum(['reference', 'wearable']),
+	placement: z.enum(placementEnum.enumValues)
+});
+
+/** Adds a device to the study, under the next free number. */
+export const POST = endpoint(async ({ locals, params, request }) => {
+	const actor = requireActor(locals);
+	authorise(actor, 'study.edit');
+	const study = await studyBySlug(locals.db, actor, params.study);
+	return json({ deviceModelId: await addDevice(locals.db, actor, study.id, Device.parse(await request.json())) }, { status: 201 });
+});
