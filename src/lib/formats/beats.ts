@@ -60,10 +60,23 @@ export function placeIntervals(rrMs: number[], anchorS: number[]): IntervalList 
 }
 
 /**
- * Intervals that a file stamps one by one: the stamps are kept, unless they are so coarse that several share one.
+ * Intervals that a file stamps one by one. Stamps that follow the intervals to 50 ms in four of five beats are the
+ * beats' own and are kept; coarser ones only carry the intervals, as in `placeIntervals`.
+ *
+ * @param rrMs intervals in file order, ms, positive
+ * @param tS stamp of each, epoch seconds
  */
 export function stampedIntervals(rrMs: number[], tS: number[]): IntervalList {
-	return placeIntervals(rrMs, tS);
+	let exact = 0;
+	for (let i = 1; i < tS.length; i++) if (Math.abs(tS[i] - tS[i - 1] - rrMs[i] / 1000) <= 0.05) exact++;
+	if (exact < 0.8 * (tS.length - 1)) return placeIntervals(rrMs, tS);
+	let min = Infinity;
+	let max = -Infinity;
+	for (const rr of rrMs) {
+		if (rr < min) min = rr;
+		if (rr > max) max = rr;
+	}
+	return { ...keepIncreasing(tS, rrMs), sampled: false, inFile: { n: rrMs.length, min, max } };
 }
 
 /** Intervals of beats add up to the time they span; values sampled at a fixed rate do not. Pauses are left out of both. */

@@ -1,4 +1,5 @@
 /** Recordings as CSV with a header line; the device stands in comment lines above it, which the CSV reader knows. */
+import { isOnFoot } from '../cadence';
 import { CHANNEL_KINDS, type ChannelKind } from '../recording';
 import { rowsToWrite, type RecordingToWrite } from './recording-to-write';
 
@@ -16,7 +17,7 @@ export interface WriteCsvOptions {
 const COLUMN: Record<ChannelKind, string> = {
 	heartRate: 'heart_rate_bpm',
 	rrInterval: 'rr_ms',
-	cadence: 'cadence_per_min',
+	cadence: 'cadence_rpm',
 	speed: 'speed_m_s',
 	power: 'power_w',
 	altitude: 'altitude_m',
@@ -59,7 +60,8 @@ export function writeCsv(recording: RecordingToWrite, options: WriteCsvOptions =
 		for (const [name, value] of facts) if (value !== null) lines.push(`# ${name}: ${value}`);
 	}
 	const timeName = time === 'elapsed' ? 'elapsed_s' : 'time';
-	lines.push([timeName, ...kinds.map((kind) => COLUMN[kind])].join(delimiter));
+	const named = (kind: ChannelKind) => (kind === 'cadence' && isOnFoot(recording.activity) ? 'cadence_spm' : COLUMN[kind]);
+	lines.push([timeName, ...kinds.map(named)].join(delimiter));
 	const figure = (value: number) => {
 		const text = String(Number(value.toFixed(3)));
 		if (!decimalComma) return text;

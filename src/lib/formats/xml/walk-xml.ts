@@ -1,0 +1,120 @@
+/**
+ * Walks an XML file as a stream of elements with their local names, and survives what real exporters write.
+ *
+ * - elements go by local name, whatever their prefix and whether it was declared
+ * - no document type is processed: one that declares entities is refused (they can be made to expand without bound or
+ *   to fetch other files), a plain one is passed over (`doctype-ignored`)
+ * - errors (a bare `&`, a control character, a wrong end tag) do not end the reading (`xml-errors`); a file that
+ *   ends early gives what stands before (`missing-tail`)
+ * - blanks or bytes before the XML declaration are passed over
+ */
+import { SaxesParser } from 'saxes';
+import type { ReadingWarning } from '../recording';
+
+export interface XmlHandler {
+	/** `path` holds local names from the root to this element. */
+	open(name: string, attributes: Record<string, string>, path: readonly string[]): void;
+	/** `text` is the element's own text, trimmed; '' for elements with children only. */
+	close(name: string, text: string, path: readonly string[]): void;
+}
+
+export interface XmlReport {
+	warnings: ReadingWarning[];
+	refusal: { code: string; message: string } | null;
+}
+
+const CHUNK = 65_536;
+const DEEPEST = 64;
+const LONGEST_TEXT = 4096;
+/** Elements of a cut file still open at its end are closed for the handler, so that a last point counts. */
+
+function localName(name: string): string {
+	const colon = name.indexOf(':');
+	return colon < 0 ? name : name.slice(colon + 1);
+}
+
+/**
+ * Walks the elements.
+ *
+ * @param text decoded text of the file
+ * @param handler told of each element
+ */
+export function walkXml(text: string, handler: XmlHandler): XmlReport {
+	const warnings: ReadingWarning[] = [];
+	let refusal: XmlReport['refusal'] = null;
+	let errors = 0;
+	let firstError: { line: number; message: string } | null = null;
+	let ended = false;
+	let elements = 0;
+	let rootClosed = false;
+	const path: string[] = [];
+	const own: string[] = [];
+	const parser = new SaxesParser({ xmlns: false, position: true });
+	parser.on('error', (error) => {
+		// What is still open at the end is told as a missing tail.
+		if (ended) return;
+		errors++;
+		firstError ??= { line: parser.line, message: error.message.replace(/^\d+:\d+:\s*/, '').replace(/\.$/, '') };
+	});
+	parser.on('doctype', (doctype) => {
+		if (/<!ENTITY|\[/i.test(doctype))
+			refusal = {
+				code: 'xml-entities',
+				message: `The file declares XML entities (line ${parser.line}). They are not read, because they can be made to fill the memory or to fetch other files. Export the recording again without them.`
+			};
+		else warnings.push({ code: 'doctype-ignored', message: 'The document type named in the file is not looked at.', at: { line: parser.line } });
+	});
+	parser.on('opentag', (tag) => {
+		const name = localName(tag.name);
+		if (path.length >= DEEPEST) {
+			refusal = { code: 'xml-too-deep', message: `The elements of the file are nested more than ${DEEPEST} deep (line ${parser.line}). No recording is built like that.` };
+			return;
+		}
+		elements++;
+		path.push(name);
+		own.push('');
+		handler.open(name, tag.attributes, path);
+	});
+	const addText = (piece: string) => {
+		const top = own.length - 1;
+		if (top >= 0 && own[top].length < LONGEST_TEXT) own[top] += piece;
+	};
+	parser.on('text', addText);
+	parser.on('cdata', addText);
+	parser.on('closetag', (tag) => {
+		const name = localName(tag.name);
+		if (path[path.length - 1] !== name) return;
+		// At the end of a cut file the parser closes what is open; half a value must not count.
+		handler.close(name, ended ? '' : own[own.length - 1].trim(), path);
+		path.pop();
+		own.pop();
+		if (path.length === 0 && !ended) rootClosed = true;
+	});
+	const start = text.search(/</);
+	if (start < 0) return { warnings, refusal };
+	for (let at = start; at < text.length && !refusal; at += CHUNK) {
+		parser.write(text.slice(at, at + CHUNK));
+		if (rootClosed && text.slice(at + CHUNK).trim() === '') break;
+	}
+	if (refusal) return { warnings, refusal };
+	ended = true;
+	if (!rootClosed) {
+		warnings.push({
+			code: 'missing-tail',
+			message: `The file ends in line ${parser.line} before its last element is closed. The ${elements} elements before that are read.`,
+			at: { line: parser.line }
+		});
+		while (path.length > 0) {
+			handler.close(path[path.length - 1], '', path);
+			path.pop();
+		}
+	}
+	const first = firstError as { line: number; message: string } | null;
+	if (errors > 0 && first)
+		warnings.push({
+			code: 'xml-errors',
+			message: `${errors} ${errors === 1 ? 'fault' : 'faults'} in the XML, first in line ${first.line} (${first.message}). What could be read is read.`,
+			at: { line: first.line }
+		});
+	return { warnings, refusal };
+}
