@@ -3,13 +3,14 @@
  * set to another zone? Only a heart rate that fits reliably makes it a question; a person answers it.
  */
 import { and, eq, isNull } from 'drizzle-orm';
+import { zoneShiftOf } from '../../import/zone';
 import { clockTime, duration } from '../../text/figures';
 import type { Database, Queryable } from '../db/client';
 import { deviceModels, recordings, sessions, uploads } from '../db/schema';
 import type { Engine } from '../jobs/engine';
 import { sessionsAround, type SessionAround } from './filing';
 import { heartRateOf } from './heart-rate';
-import { zoneMistakePossible, zoneShiftOf } from './placement';
+import { zoneMistakePossible } from './placement';
 import { uploaderOf } from './uploader';
 
 /** Code of an upload whose session shall stay its own, whatever fits elsewhere. */

@@ -1,6 +1,7 @@
 /** Puts a recording whose device is known among the sessions of its study. */
 import { and, eq, gt, inArray, lt, sql } from 'drizzle-orm';
 import type { ImportQuestion } from '../../import/question';
+import { FARTHEST_ZONE_SHIFT_S } from '../../import/zone';
 import { clockTime } from '../../text/figures';
 import type { Queryable } from '../db/client';
 import { deviceModels, participants, recordings, sessions, studies, uploads } from '../db/schema';
@@ -54,7 +55,7 @@ export async function fileRecording(tx: Queryable, sink: JobSink, uploader: Uplo
 	const code = await codeOf(tx, sessionId);
 	return placement.kind === 'join'
 		? { state: 'filed', sessionId, messageCode: 'joined', message: `Put into ${code}: ${Math.floor(placement.share * 100)} % of the shorter of the two overlaps.`, question: null }
-		: { state: 'filed', sessionId, messageCode: 'own-session', message: `${code} was opened for it: it overlaps no other session by half of the shorter one.`, question: null };
+		: { state: 'filed', sessionId, messageCode: 'own-session', message: `${code} was opened for it; nothing else overlapped it by half of the shorter one.`, question: null };
 }
 
 /** Makes a session for a recording and gives its id. The study's sorting is locked by the caller. */
@@ -152,11 +153,9 @@ export interface SessionAround {
 	deviceModelIds: string[];
 }
 
-const WIDEST_ZONE_GAP_S = 14.5 * 3600;
-
 /** Sessions of the study within the widest zone mistake of a recording, open ones only. */
 export async function sessionsAround(tx: Queryable, recording: Pick<FiledRecording, 'studyId' | 'startS' | 'endS'>): Promise<SessionAround[]> {
-	const rows = await sessionsBetween(tx, recording.studyId, recording.startS - WIDEST_ZONE_GAP_S, recording.endS + WIDEST_ZONE_GAP_S);
+	const rows = await sessionsBetween(tx, recording.studyId, recording.startS - FARTHEST_ZONE_SHIFT_S, recording.endS + FARTHEST_ZONE_SHIFT_S);
 	return rows.filter((r) => !isClosed(r.state));
 }
 

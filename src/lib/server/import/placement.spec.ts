@@ -1,6 +1,7 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
-import { overlapShare, placeRecording, sessionSpan, zoneMistakePossible, zoneShiftOf, type RecordingToPlace, type SessionSlot } from './placement';
+import { zoneShiftOf } from '../../import/zone';
+import { overlapShare, placeRecording, sessionSpan, zoneMistakePossible, type RecordingToPlace, type SessionSlot } from './placement';
 
 const minutes = (startMin: number, endMin: number) => ({ startS: startMin * 60, endS: endMin * 60 });
 const slot = (over: Partial<SessionSlot> = {}): SessionSlot => ({

@@ -6,6 +6,7 @@
  * begun: those are questions for a person.
  */
 import type { ImportQuestion } from '../../import/question';
+import { FARTHEST_ZONE_SHIFT_S, ZONE_STEP_S } from '../../import/zone';
 
 export interface Span {
 	startS: number;
@@ -97,10 +98,6 @@ export function sessionSpan(recordings: readonly (Span & { isReference: boolean 
 	return span;
 }
 
-/** Farthest zone mistake worth asking about: the widest two zones apart, and daylight saving. */
-const FARTHEST_ZONE_SHIFT_S = 14.5 * 3600;
-const ZONE_STEP_S = 1800;
-
 /**
  * May the recording be of this session with its clock set to another zone? True when some shift by whole or half
  * hours, none at all excepted, brings at least 80 % of the shorter one inside the other and neither is more than twice as long.
@@ -115,14 +112,4 @@ export function zoneMistakePossible(recording: Span, session: Span): boolean {
 		if (steps === 0 || Math.abs(shiftS) > FARTHEST_ZONE_SHIFT_S) return false;
 		return overlapShare({ startS: recording.startS + shiftS, endS: recording.endS + shiftS }, session) >= 0.8;
 	});
-}
-
-/**
- * The zone shift that an offset found by heart rate stands for, seconds; null when it is no whole or half hour give
- * or take five minutes (clocks that were never set are a question for the analyst, not a zone).
- */
-export function zoneShiftOf(offsetS: number): number | null {
-	const zoneShiftS = Math.round(offsetS / ZONE_STEP_S) * ZONE_STEP_S;
-	if (zoneShiftS === 0 || Math.abs(zoneShiftS) > FARTHEST_ZONE_SHIFT_S) return null;
-	return Math.abs(offsetS - zoneShiftS) <= 300 ? zoneShiftS : null;
 }

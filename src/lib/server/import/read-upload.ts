@@ -4,7 +4,7 @@
  * dies at any moment leaves the upload as it was, and the job is done again.
  */
 import { and, eq, inArray, sql } from 'drizzle-orm';
-import type { Recording } from '../../formats/recording';
+import { traceOf, type Recording } from '../../formats/recording';
 import type { Database, Queryable } from '../db/client';
 import { deviceModels, rawFiles, recordings, studies, traces, uploads } from '../db/schema';
 import { EngineStopped, type Engine, type ReadEntry } from '../jobs/engine';
@@ -17,6 +17,8 @@ import { duplicateSentence, earlierUpload, keepBytes } from './receive';
 import { uploaderOf, type Uploader } from './uploader';
 
 type Upload = typeof uploads.$inferSelect;
+
+const NO_HEART_RATE = 'no-heart-rate';
 
 /** Does the job. Done already, or taken back meanwhile: nothing happens. */
 export async function readUpload(db: Database, engine: Engine, sink: JobSink, uploadId: string): Promise<void> {
@@ -34,7 +36,7 @@ export async function readUpload(db: Database, engine: Engine, sink: JobSink, up
 	}
 	await inOneGo(db, uploadId, async (tx, upload) => {
 		const uploader = await uploaderOf(tx, upload.teamId, upload.uploadedBy);
-		if (entries.length === 1 && entries[0].bytes === null) await settle(tx, sink, uploader, upload, entries[0], bytes);
+		if (entries.length === 1 && entries[0].bytes === null && entries[0].fileName === fileName) await settle(tx, sink, uploader, upload, entries[0], bytes);
 		else await unpack(tx, sink, uploader, upload, entries);
 	});
 }
@@ -64,6 +66,10 @@ async function settle(tx: Queryable, sink: JobSink, uploader: Uploader, upload: 
 		await refuse(tx, upload, entry.reading.refusal.code, entry.reading.refusal.message);
 		return;
 	}
+	if (!traceOf(entry.reading.recording, 'heartRate')) {
+		await refuse(tx, upload, NO_HEART_RATE, noHeartRateSentence(entry.reading.recording));
+		return;
+	}
 	const recording = await storeRecording(tx, upload, entry.reading.recording);
 	await record(tx, uploader, {
 		action: 'recording.imported',
@@ -72,6 +78,11 @@ async function settle(tx: Queryable, sink: JobSink, uploader: Uploader, upload: 
 		detail: { fileName: upload.fileName, format: recording.format, readerVersion: recording.readerVersion, warnings: recording.warnings.length }
 	});
 	await recogniseAndFile(tx, sink, uploader, upload, recording, bytes);
+}
+
+function noHeartRateSentence(read: Recording): string {
+	const holds = read.traces.length > 0 ? `It holds ${read.traces.map((t) => t.kind).join(', ')} and no heart rate` : 'It holds no heart rate';
+	return `${holds}, so there is nothing to compare. Look whether the sensor was connected, and export the recording again with heart rate.`;
 }
 
 async function storeRecording(tx: Queryable, upload: Upload, read: Recording): Promise<FiledRecording> {
@@ -125,7 +136,7 @@ async function whichDeviceSentence(tx: Queryable, recording: FiledRecording, rem
 	const { maker, product, serial } = recording.device;
 	const name = [maker, product].filter(Boolean).join(' ');
 	const says = name || serial ? `It names ${[name, serial ? `serial number ${serial}` : ''].filter(Boolean).join(', ')}, not seen before.` : 'It does not say which device made it.';
-	return suggested ? `${says} Its name suggests ${suggested.name}.` : says;
+	return suggested ? `${says} What it says fits the ${suggested.name}.` : says;
 }
 
 async function activitiesOf(tx: Queryable, studyId: string): Promise<string[]> {
@@ -140,6 +151,10 @@ async function unpack(tx: Queryable, sink: JobSink, uploader: Uploader, upload: 
 		const refused = (messageCode: string, message: string) => tx.insert(uploads).values({ ...row, state: 'refused', messageCode, message, finishedAt: new Date() });
 		if (!entry.reading.ok) {
 			await refused(entry.reading.refusal.code, entry.reading.refusal.message);
+			continue;
+		}
+		if (!traceOf(entry.reading.recording, 'heartRate')) {
+			await refused(NO_HEART_RATE, noHeartRateSentence(entry.reading.recording));
 			continue;
 		}
 		if (entry.bytes === null) throw new Error('An archive gives the bytes of its entries.');

@@ -5,6 +5,7 @@ import { requireActor } from '$lib/server/auth/require';
 import { endpoint } from '$lib/server/http/endpoint';
 import { answerDevice, keepApart, placeInSession, takeOut } from '$lib/server/import/answers';
 import { databaseQueue } from '$lib/server/jobs/queue';
+import type { RequestHandler } from './$types';
 
 const Answer = z.discriminatedUnion('act', [
 	z.object({ act: z.literal('device'), deviceModelId: z.uuid() }),
@@ -14,7 +15,7 @@ const Answer = z.discriminatedUnion('act', [
 ]);
 
 /** Answers what an upload asks, or corrects where it was put. */
-export const PATCH = endpoint(async ({ locals, params, request }) => {
+export const PATCH: RequestHandler = endpoint(async ({ locals, params, request }) => {
 	const actor = requireActor(locals);
 	authorise(actor, 'recording.upload');
 	const uploadId = z.uuid().parse(params.upload);
@@ -27,7 +28,7 @@ export const PATCH = endpoint(async ({ locals, params, request }) => {
 });
 
 /** Takes the file out again, with everything that came from it. */
-export const DELETE = endpoint(async ({ locals, params }) => {
+export const DELETE: RequestHandler = endpoint(async ({ locals, params }) => {
 	const actor = requireActor(locals);
 	authorise(actor, 'recording.upload');
 	await takeOut(locals.db, actor, z.uuid().parse(params.upload));

@@ -7,9 +7,10 @@ import { receiveFiles } from '$lib/server/import/receive';
 import { studyBySlug } from '$lib/server/import/study';
 import { authorise } from '$lib/server/auth/actor';
 import { databaseQueue } from '$lib/server/jobs/queue';
+import type { RequestHandler } from './$types';
 
 /** What the import page shows: found sessions, files on their way in, questions, what was left out. */
-export const GET = endpoint(async ({ locals, params }) => {
+export const GET: RequestHandler = endpoint(async ({ locals, params }) => {
 	const actor = requireActor(locals);
 	authorise(actor, 'recording.upload');
 	const study = await studyBySlug(locals.db, actor, params.study);
@@ -17,7 +18,7 @@ export const GET = endpoint(async ({ locals, params }) => {
 });
 
 /** Takes in files: multipart/form-data, every field that is a file. Answers with one receipt a file, in order. */
-export const POST = endpoint(async ({ locals, params, request }) => {
+export const POST: RequestHandler = endpoint(async ({ locals, params, request }) => {
 	const actor = requireActor(locals);
 	authorise(actor, 'recording.upload');
 	const study = await studyBySlug(locals.db, actor, params.study);

@@ -6,6 +6,7 @@ import { placementEnum } from '$lib/server/db/schema';
 import { endpoint } from '$lib/server/http/endpoint';
 import { addDevice } from '$lib/server/import/add-device';
 import { studyBySlug } from '$lib/server/import/study';
+import type { RequestHandler } from './$types';
 
 const Device = z.object({
 	name: z.string().trim().min(1).max(80),
@@ -15,7 +16,7 @@ const Device = z.object({
 });
 
 /** Adds a device to the study, under the next free number. */
-export const POST = endpoint(async ({ locals, params, request }) => {
+export const POST: RequestHandler = endpoint(async ({ locals, params, request }) => {
 	const actor = requireActor(locals);
 	authorise(actor, 'study.edit');
 	const study = await studyBySlug(locals.db, actor, params.study);

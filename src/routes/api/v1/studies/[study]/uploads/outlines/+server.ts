@@ -5,11 +5,12 @@ import { requireActor } from '$lib/server/auth/require';
 import { endpoint } from '$lib/server/http/endpoint';
 import { outlinesOf } from '$lib/server/import/outlines';
 import { studyBySlug } from '$lib/server/import/study';
+import type { RequestHandler } from './$types';
 
 const Ids = z.array(z.uuid()).max(200);
 
 /** Thin heart-rate lines: `?recordings=<id>,<id>,…`. A recording's line never changes. */
-export const GET = endpoint(async ({ locals, params, url }) => {
+export const GET: RequestHandler = endpoint(async ({ locals, params, url }) => {
 	const actor = requireActor(locals);
 	authorise(actor, 'recording.upload');
 	const study = await studyBySlug(locals.db, actor, params.study);

@@ -4,6 +4,7 @@ import { requireActor } from '$lib/server/auth/require';
 import { endpoint } from '$lib/server/http/endpoint';
 import { describeSession } from '$lib/server/import/answers';
 import { studyBySlug } from '$lib/server/import/study';
+import type { RequestHandler } from './$types';
 
 const Description = z.object({
 	participantId: z.uuid().nullable().optional(),
@@ -12,7 +13,7 @@ const Description = z.object({
 });
 
 /** Says who wore the devices and what was done. */
-export const PATCH = endpoint(async ({ locals, params, request }) => {
+export const PATCH: RequestHandler = endpoint(async ({ locals, params, request }) => {
 	const actor = requireActor(locals);
 	authorise(actor, 'session.sort');
 	const study = await studyBySlug(locals.db, actor, params.study);
