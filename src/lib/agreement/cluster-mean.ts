@@ -75,6 +75,8 @@ export function clusterMean(clusters: readonly ClusterMean[], between = 1, withi
 /** Two-sided interval mean ± t · standard error. */
 export function meanInterval(estimate: MeanEstimate | NotDeterminable, confidence = 0.95): Interval {
 	if ('notDeterminable' in estimate) return estimate;
+	if (!(estimate.standardError > 0))
+		return notDeterminable('The sessions do not differ at all: there is no spread to judge an interval by.');
 	const reach = studentQuantile(1 - (1 - confidence) / 2, estimate.df) * estimate.standardError;
 	return [estimate.mean - reach, estimate.mean + reach];
 }
