@@ -30,7 +30,7 @@ import {
 } from './recording';
 import type { SampleTable } from './sample-table';
 import { timestampWarnings, mergeOrder } from './time-stamps';
-import { counted, timeText } from './time-text';
+import { counted, spanText, timeText } from './time-text';
 
 /** What a format's reader found in a file. */
 export interface FoundInFile {
@@ -110,13 +110,7 @@ export function assemble(found: FoundInFile, options: ReadOptions = {}): Reading
 	}
 	const refusal = heartRateRefusal(columnTraces.get('heartRate'), table, found, traces);
 	if (refusal) return { ok: false, refusal, warnings };
-	let startS = Infinity;
-	let endS = -Infinity;
-	for (const tS of [order.tS, ...traces.map((trace) => trace.tS)]) {
-		if (tS.length === 0) continue;
-		startS = Math.min(startS, tS[0]);
-		endS = Math.max(endS, tS[tS.length - 1]);
-	}
+	const { startS, endS } = spanOf(order.tS, traces);
 	return {
 		ok: true,
 		recording: {
@@ -132,6 +126,17 @@ export function assemble(found: FoundInFile, options: ReadOptions = {}): Reading
 			warnings
 		}
 	};
+}
+
+/** Span of the rows; of the traces only where there are no rows (a list of intervals). */
+function spanOf(rowTimes: Float64Array, traces: Trace[]): { startS: number; endS: number } {
+	let startS = Infinity;
+	let endS = -Infinity;
+	for (const tS of rowTimes.length > 0 ? [rowTimes] : traces.map((trace) => trace.tS)) {
+		startS = Math.min(startS, tS[0]);
+		endS = Math.max(endS, tS[tS.length - 1]);
+	}
+	return { startS, endS };
 }
 
 const WORD: Record<ChannelKind, string> = {
@@ -270,6 +275,7 @@ function withStoredBeats(rows: Trace | undefined, found: FoundInFile, warnings: 
 	const value: number[] = [];
 	let k = 0;
 	let used = 0;
+	const { table } = found;
 	let min = rows?.inFile?.min ?? Infinity;
 	let max = rows?.inFile?.max ?? -Infinity;
 	const rowLength = rows?.tS.length ?? 0;
@@ -297,7 +303,8 @@ function withStoredBeats(rows: Trace | undefined, found: FoundInFile, warnings: 
 			`The file holds ${counted(stored.tS.length, 'beat')} that a strap stored and handed over later, from ${timeText(stored.tS[0])} to ${timeText(stored.tS[stored.tS.length - 1])}. ` +
 			(rows
 				? `${used} of them give the heart rate where the records have none.`
-				: 'The heart rate comes from them; the records have none.'),
+				: 'The heart rate comes from them; the records have none.') +
+			(table.n > 0 && stored.tS[0] < firstOf(table) - 5 ? ` They begin ${spanText(firstOf(table) - stored.tS[0])} before the first record.` : ''),
 		at: { tS: stored.tS[0] }
 	});
 	return {
@@ -306,6 +313,10 @@ function withStoredBeats(rows: Trace | undefined, found: FoundInFile, warnings: 
 		value: Float64Array.from(value),
 		inFile: { n: (rows?.inFile?.n ?? 0) + used, min, max }
 	};
+}
+
+function firstOf(table: SampleTable): number {
+	return mergeOrder(table.tS.subarray(0, table.n)).tS[0];
 }
 
 function intervalWarnings(intervals: IntervalList): ReadingWarning[] {

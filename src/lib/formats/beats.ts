@@ -21,8 +21,8 @@ const WINDOW = 20;
  * Places intervals by the clock of the records that they stand between.
  *
  * The sum of the intervals gives the distance from beat to beat to the millisecond; the records give the clock, to
- * the second. Their difference is constant but for rounding as long as no beat is lost, so its running median over
- * 41 beats carries the intervals onto the clock. The result is right to about 1 s as a whole (devices write an
+ * the second. Their difference is constant but for rounding as long as no beat is lost, so its running mean over 41
+ * beats (of the middle half of the values, which a lost beat does not move) carries the intervals onto the clock. The result is right to about 1 s as a whole (devices write an
  * interval just before or just after the record it belongs to) and to some 50 ms from beat to beat.
  *
  * @param rrMs intervals in file order, ms, positive
@@ -53,7 +53,7 @@ export function placeIntervals(rrMs: number[], anchorS: number[]): IntervalList 
 		const reference = i < n ? median(difference, Math.max(begin, i - 15), i) : 0;
 		if (i < n && Math.abs(difference[i] - reference) <= BREAK_S) continue;
 		for (let k = begin; k < i; k++)
-			tS[k] = sum[k] + median(difference, Math.max(begin, k - WINDOW), Math.min(i, k + WINDOW + 1));
+			tS[k] = sum[k] + middleMean(difference, Math.max(begin, k - WINDOW), Math.min(i, k + WINDOW + 1));
 		begin = i;
 	}
 	return { ...keepIncreasing(tS, rrMs), sampled: false, inFile };
@@ -103,6 +103,15 @@ function keepIncreasing(tS: number[], rrMs: number[]): { tS: Float64Array; rrMs:
 		values.push(rrMs[i]);
 	}
 	return { tS: Float64Array.from(times), rrMs: Float64Array.from(values), overlapping: tS.length - times.length };
+}
+
+/** Mean of the middle half. A median would hop between the two values that whole-second rounding gives to an even beat. */
+function middleMean(values: Float64Array, from: number, to: number): number {
+	const part = values.slice(from, to).sort();
+	const cut = part.length >> 2;
+	let sum = 0;
+	for (let i = cut; i < part.length - cut; i++) sum += part[i];
+	return sum / (part.length - 2 * cut);
 }
 
 function median(values: Float64Array, from: number, to: number): number {

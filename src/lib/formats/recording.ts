@@ -104,7 +104,10 @@ export interface Recording {
 	device: RecordedDevice;
 	/** The file's own word for the activity, lower case, or null. */
 	activity: string | null;
-	/** First and last time stamp of any record or channel, epoch seconds on the device's clock. */
+	/**
+	 * First and last time stamp of the records (rows, track points), epoch seconds on the device's clock; of the traces
+	 * where a file holds nothing but intervals. Beats that a strap stored and RR intervals may reach beyond.
+	 */
 	startS: number;
 	endS: number;
 	traces: Trace[];
