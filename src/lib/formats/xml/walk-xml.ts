@@ -26,7 +26,8 @@ export interface XmlReport {
 const CHUNK = 65_536;
 const DEEPEST = 64;
 const LONGEST_TEXT = 4096;
-/** Elements of a cut file still open at its end are closed for the handler, so that a last point counts. */
+/** An ampersand that begins none of XML's own entities; the parser would swallow all up to the next semicolon. */
+const BARE_AMPERSAND = /&(?!(?:#\d{1,7}|#x[\da-f]{1,6}|amp|lt|gt|quot|apos);)/gi;
 
 function localName(name: string): string {
 	const colon = name.indexOf(':');
@@ -44,6 +45,9 @@ export function walkXml(text: string, handler: XmlHandler): XmlReport {
 	let refusal: XmlReport['refusal'] = null;
 	let errors = 0;
 	let firstError: { line: number; message: string } | null = null;
+	const bare = text.search(BARE_AMPERSAND);
+	const clean = bare < 0 ? text : text.replace(BARE_AMPERSAND, () => (errors++, '&amp;'));
+	if (bare >= 0) firstError = { line: text.slice(0, bare).split('\n').length, message: 'a bare ampersand' };
 	let ended = false;
 	let elements = 0;
 	let rootClosed = false;
@@ -90,12 +94,9 @@ export function walkXml(text: string, handler: XmlHandler): XmlReport {
 		own.pop();
 		if (path.length === 0 && !ended) rootClosed = true;
 	});
-	const start = text.search(/</);
+	const start = clean.search(/</);
 	if (start < 0) return { warnings, refusal };
-	for (let at = start; at < text.length && !refusal; at += CHUNK) {
-		parser.write(text.slice(at, at + CHUNK));
-		if (rootClosed && text.slice(at + CHUNK).trim() === '') break;
-	}
+	for (let at = start; at < clean.length && !refusal && !rootClosed; at += CHUNK) parser.write(clean.slice(at, at + CHUNK));
 	if (refusal) return { warnings, refusal };
 	ended = true;
 	if (!rootClosed) {
