@@ -79,6 +79,14 @@ export function smoothed(source: Float64Array, character: Pick<WearableCharacter
 	return out;
 }
 
+/** Mean delay of `smoothed` as it is on its grid, s (half a step less than tau and half the window). */
+export function delayOf(character: Pick<WearableCharacter, 'tauS' | 'windowS' | 'delayS'>): number {
+	const dt = TRUTH_DT_S;
+	const window = Math.max(1, Math.round(character.windowS / dt));
+	const firstOrder = character.tauS > 0 ? dt / (Math.exp(dt / character.tauS) - 1) : 0;
+	return firstOrder + ((window - 1) * dt) / 2 + Math.round(character.delayS / dt) * dt;
+}
+
 export function simulateWearable(input: {
 	truth: Truth;
 	activity: Activity;
@@ -155,7 +163,7 @@ export function simulateWearable(input: {
 		if (ct.length > 1) cadence = { kind: 'cadence', tS: Float64Array.from(ct), value: Float64Array.from(cv) };
 	}
 
-	const deviceDelayS = character.tauS + character.windowS / 2 + character.delayS;
+	const deviceDelayS = delayOf(character);
 	const responseLagS = deviceDelayS - reference.delayS;
 	return {
 		heartRate: { kind: 'heartRate', tS: Float64Array.from(tS), value: Float64Array.from(value) },

@@ -1,0 +1,95 @@
+/**
+ * The best-fit shift of two heart-rate traces, with what is needed to trust it or not.
+ *
+ * What it is. The shift found is the sum of clock offset and response lag (with its sign: a late wearable needs a
+ * negative shift), by the sum of delays of the smoother that explains the wearable best. Between two traces without
+ * smoothing it is the shift between them. Heart rate alone cannot tell clock from lag; see `clock-offset`.
+ */
+import { coarseSearch, peaksOf } from './coarse-search';
+import { confidenceOf, settleCandidate, type Confidence } from './confidence';
+import { refine, type Refined } from './response-bank';
+import { heartRateGrid } from './second-grid';
+import type { ShiftEstimate } from './shift';
+import type { Trace } from '../formats/recording';
+import { zoneWords } from './zone';
+
+/** Least seconds with a value on each side, and least overlap at the best shift, s. */
+const LEAST_VALID_S = 120;
+const LEAST_OVERLAP_S = 120;
+
+/** What the rule of reliability looks at. */
+export interface Evidence {
+	/** Lead of the best score over the next, times the root of the wearable's seconds. */
+	lead: number;
+	confidence: Confidence;
+	refined: Refined;
+	/** Seconds of the wearable with a value. */
+	validS: number;
+	/** Share of the shorter trace that overlaps. */
+	overlapShare: number;
+}
+
+export interface ShiftSearch {
+	estimate: ShiftEstimate;
+	evidence: Evidence | null;
+}
+
+/** Estimates the best-fit shift. Never throws: what cannot be determined is said in the estimate. */
+export function estimateBestFitShift(reference: Pick<Trace, 'tS' | 'value'>, wearable: Pick<Trace, 'tS' | 'value'>): ShiftEstimate {
+	return searchBestFitShift(reference, wearable).estimate;
+}
+
+/** As `estimateBestFitShift`, with the evidence that the rule of reliability saw. */
+export function searchBestFitShift(reference: Pick<Trace, 'tS' | 'value'>, wearable: Pick<Trace, 'tS' | 'value'>): ShiftSearch {
+	const r = heartRateGrid(reference);
+	const w = heartRateGrid(wearable);
+	if (r.valid < LEAST_VALID_S || w.valid < LEAST_VALID_S) {
+		const side = r.valid < LEAST_VALID_S ? 'the reference' : 'the wearable';
+		const has = Math.min(r.valid, w.valid);
+		return {
+			estimate: nothing('too-short', `Not determinable: ${side} holds ${has} s of heart rate, and at least ${LEAST_VALID_S} s are needed. Use a longer recording, or place the offset by hand.`),
+			evidence: null
+		};
+	}
+	const candidates = peaksOf(coarseSearch(r, w));
+	if (candidates.length === 0 || !(candidates[0].score > 0))
+		return { estimate: nothing('flat', 'Not determinable: the two traces have nothing in common at any shift. Check that both files belong to the same session, or place the offset by hand.'), evidence: null };
+
+	const refined = refine(r, w, candidates[0].shiftS);
+	const settled = candidates.map((c, i) => (i === 0 ? refined.plainS : settleCandidate(r, w, c.shiftS)));
+	const confidence = confidenceOf(r, w, refined, settled);
+	const lead = candidates.length > 1 ? (candidates[0].score - candidates[1].score) * Math.sqrt(w.valid) : candidates[0].score * Math.sqrt(w.valid);
+	const evidence: Evidence = { lead, confidence, refined, validS: w.valid, overlapShare: confidence.overlapS / Math.max(1, Math.min(r.valid, w.valid)) };
+	const { code, sentence } = judge(evidence);
+	const half = Math.hypot(1.5 * 1.96 * confidence.standardErrorS, 0.75);
+	const zone = zoneWords(refined.totalS);
+	return {
+		estimate: {
+			bestFitShiftS: refined.totalS,
+			ci95: [refined.totalS - half, refined.totalS + half],
+			reliable: code === 'reliable',
+			reasonCode: code,
+			reason: zone ? `${sentence} The shift looks like ${zone}.` : sentence,
+			candidates: candidates.map((c, i) => ({ shiftS: i === 0 ? refined.totalS : c.shiftS, score: c.score })),
+			clockOffsetS: null,
+			clockOffsetCi95: null,
+			responseLagS: null
+		},
+		evidence
+	};
+}
+
+/** The rule of reliability: every part must hold; the first that does not gives the reason. */
+export function judge(evidence: Evidence): { code: string; sentence: string } {
+	const { lead, confidence, refined } = evidence;
+	if (confidence.overlapS < LEAST_OVERLAP_S) return { code: 'no-overlap', sentence: 'Not determinable: at the best shift the traces hardly overlap. Check that both belong to the same session, or place the offset by hand.' };
+	if (confidence.agreement < 0.5) return { code: 'low-agreement', sentence: 'Not reliable: even at the best shift the two heart rates agree for less than half of the time. Check that both belong to the same session; a tag over long faults helps the eye.' };
+	if (lead < 20 || confidence.win < 0.95) return { code: 'several-peaks', sentence: 'Not reliable: another shift fits nearly as well. Compare the candidates at a break or an effort and choose by eye.' };
+	if (refined.atEdge) return { code: 'at-edge', sentence: 'Not reliable: the best fit lies at the edge of the close search. Compare the candidates by eye.' };
+	if (confidence.spread90S > 3) return { code: 'wide-interval', sentence: 'Not reliable: the session is too even to place it within 3 s. A break or a hard effort near start and end would help; place it by eye.' };
+	return { code: 'reliable', sentence: 'Reliable: one shift fits clearly better than all others, with a narrow interval.' };
+}
+
+function nothing(reasonCode: string, reason: string): ShiftEstimate {
+	return { bestFitShiftS: null, ci95: null, reliable: false, reasonCode, reason, candidates: [], clockOffsetS: null, clockOffsetCi95: null, responseLagS: null };
+}
