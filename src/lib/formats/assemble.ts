@@ -69,6 +69,7 @@ const ALL_ZERO_MEANS_NONE: ReadonlySet<ChannelKind> = new Set(['cadence', 'speed
 export function assemble(found: FoundInFile, options: ReadOptions = {}): Reading {
 	const { table } = found;
 	const warnings = [...found.warnings];
+	dropImpossibleTimes(table);
 	warnings.push(...timestampWarnings(table, found, options));
 	const order = mergeOrder(table.tS.subarray(0, table.n));
 	const traces: Trace[] = [];
@@ -122,10 +123,19 @@ export function assemble(found: FoundInFile, options: ReadOptions = {}): Reading
 			endS,
 			traces,
 			...(found.heartRateSensors?.length ? { heartRateSensors: found.heartRateSensors } : {}),
-			...(found.heartRateSources && found.heartRateSources.length > 1 ? { heartRateSources: found.heartRateSources } : {}),
+			...(found.heartRateSources && found.heartRateSources.length > 1
+				? { heartRateSources: found.heartRateSources }
+				: {}),
 			warnings
 		}
 	};
+}
+
+/** No calendar reaches further, and no clock shows it: such a time stamp counts as none. */
+const FURTHEST_S = 8.64e12;
+
+function dropImpossibleTimes(table: SampleTable): void {
+	for (let row = 0; row < table.n; row++) if (!(Math.abs(table.tS[row]) <= FURTHEST_S)) table.tS[row] = NaN;
 }
 
 /** Span of the rows; of the traces only where there are no rows (a list of intervals). */
@@ -224,11 +234,31 @@ function heartRateWarnings(table: SampleTable, column: Float64Array, found: Foun
 		if (counts[what] > 0) warnings.push({ code, message, at: { tS: first[what] } });
 	};
 	const readings = (n: number) => counted(n, 'heart-rate value');
-	tell('zero', 'heart-rate-zero', `${readings(counts.zero)} of 0, first at ${timeText(first.zero ?? NaN)}: no reading, left out.`);
-	tell('empty255', 'heart-rate-255', `${readings(counts.empty255)} of 255, first at ${timeText(first.empty255 ?? NaN)}: the mark for 'empty' written as a number, left out.`);
-	tell('impossible', 'heart-rate-impossible', `${readings(counts.impossible)} below 0 or above ${HIGHEST_BPM}, first at ${timeText(first.impossible ?? NaN)}: left out.`);
-	tell('low', 'implausible-heart-rate', `${readings(counts.low)} below 30 bpm (lowest ${lowest}), first at ${timeText(first.low ?? NaN)}: kept as the file has them.`);
-	tell('high', 'implausible-heart-rate', `${readings(counts.high)} above 220 bpm (highest ${highest}), first at ${timeText(first.high ?? NaN)}: kept as the file has them.`);
+	tell(
+		'zero',
+		'heart-rate-zero',
+		`${readings(counts.zero)} of 0, first at ${timeText(first.zero ?? NaN)}: no reading, left out.`
+	);
+	tell(
+		'empty255',
+		'heart-rate-255',
+		`${readings(counts.empty255)} of 255, first at ${timeText(first.empty255 ?? NaN)}: the mark for 'empty' written as a number, left out.`
+	);
+	tell(
+		'impossible',
+		'heart-rate-impossible',
+		`${readings(counts.impossible)} below 0 or above ${HIGHEST_BPM}, first at ${timeText(first.impossible ?? NaN)}: left out.`
+	);
+	tell(
+		'low',
+		'implausible-heart-rate',
+		`${readings(counts.low)} below 30 bpm (lowest ${lowest}), first at ${timeText(first.low ?? NaN)}: kept as the file has them.`
+	);
+	tell(
+		'high',
+		'implausible-heart-rate',
+		`${readings(counts.high)} above 220 bpm (highest ${highest}), first at ${timeText(first.high ?? NaN)}: kept as the file has them.`
+	);
 	if (counts.valid > 0 && found.rowsHoldAllChannels !== false) warnings.push(...missingHeartRate(table, column, found));
 	return warnings;
 }
@@ -304,7 +334,9 @@ function withStoredBeats(rows: Trace | undefined, found: FoundInFile, warnings: 
 			(rows
 				? `${used} of them give the heart rate where the records have none.`
 				: 'The heart rate comes from them; the records have none.') +
-			(table.n > 0 && stored.tS[0] < firstOf(table) - 5 ? ` They begin ${spanText(firstOf(table) - stored.tS[0])} before the first record.` : ''),
+			(table.n > 0 && stored.tS[0] < firstOf(table) - 5
+				? ` They begin ${spanText(firstOf(table) - stored.tS[0])} before the first record.`
+				: ''),
 		at: { tS: stored.tS[0] }
 	});
 	return {
@@ -342,7 +374,11 @@ function intervalWarnings(intervals: IntervalList): ReadingWarning[] {
 	return warnings;
 }
 
-function heartRateOfIntervals(intervals: Trace | undefined, sampled: boolean, warnings: ReadingWarning[]): Trace | null {
+function heartRateOfIntervals(
+	intervals: Trace | undefined,
+	sampled: boolean,
+	warnings: ReadingWarning[]
+): Trace | null {
 	if (!intervals) return null;
 	if (sampled) {
 		const keep = [...intervals.value.keys()].filter((i) => intervals.value[i] >= 240 && intervals.value[i] <= 2500);
@@ -351,7 +387,10 @@ function heartRateOfIntervals(intervals: Trace | undefined, sampled: boolean, wa
 			code: 'hr-from-rr',
 			message: `The file has no heart rate of its own. It is 60 s divided by each of ${counted(keep.length, 'sampled interval')}.`
 		});
-		return countedTrace(keep.map((i) => intervals.tS[i]), keep.map((i) => 60000 / intervals.value[i]));
+		return countedTrace(
+			keep.map((i) => intervals.tS[i]),
+			keep.map((i) => 60000 / intervals.value[i])
+		);
 	}
 	const derived = heartRateFromRr(intervals.tS, intervals.value);
 	if (derived.tS.length === 0) return null;
@@ -385,7 +424,9 @@ function heartRateRefusal(
 ): { code: string; message: string } | null {
 	if (heartRate && heartRate.tS.length >= 2) return null;
 	const name = found.format === 'rr-text' ? 'interval text' : found.format.toUpperCase();
-	const others = traces.filter((trace) => trace.kind !== 'heartRate').map((trace) => `${WORD[trace.kind]} (${trace.tS.length})`);
+	const others = traces
+		.filter((trace) => trace.kind !== 'heartRate')
+		.map((trace) => `${WORD[trace.kind]} (${trace.tS.length})`);
 	const holds =
 		`This ${name} file was read: ${counted(table.n, found.rowWord)}` +
 		(others.length ? `, with ${others.join(', ')}` : '') +

@@ -97,7 +97,7 @@ function keepIncreasing(tS: number[], rrMs: number[]): { tS: Float64Array; rrMs:
 	const values: number[] = [];
 	let last = -Infinity;
 	for (let i = 0; i < tS.length; i++) {
-		if (!(tS[i] > last)) continue;
+		if (!(tS[i] > last) || !(tS[i] <= 8.64e12)) continue;
 		last = tS[i];
 		times.push(tS[i]);
 		values.push(rrMs[i]);

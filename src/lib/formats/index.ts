@@ -64,19 +64,31 @@ const DEEPEST_ARCHIVE = 2;
 function readPacked(bytes: Uint8Array, name: string, options: ReadOptions, depth: number): NamedReading[] {
 	const most = options.maxUnpackedBytes ?? MOST_UNPACKED_BYTES;
 	if (depth > DEEPEST_ARCHIVE && (isGzip(bytes) || isZip(bytes)))
-		return [{ name, reading: refuse('archive-in-archive', `${name} is an archive inside archives. Unpack it and import what is in it.`) }];
+		return [
+			{
+				name,
+				reading: refuse(
+					'archive-in-archive',
+					`${name} is an archive inside archives. Unpack it and import what is in it.`
+				)
+			}
+		];
 	if (isGzip(bytes)) {
 		const unpacked = gunzipBounded(bytes, most);
 		if (!unpacked.ok) return [{ name, reading: refuse(unpacked.code, unpacked.message) }];
 		const inner = readPacked(unpacked.bytes, name.replace(/\.gz$/i, ''), options, depth + 1);
 		if (!unpacked.cut) return inner;
-		const cut: ReadingWarning = { code: 'missing-tail', message: `The compressed file is cut. The ${unpacked.bytes.length} bytes that could be unpacked are read.` };
+		const cut: ReadingWarning = {
+			code: 'missing-tail',
+			message: `The compressed file is cut. The ${unpacked.bytes.length} bytes that could be unpacked are read.`
+		};
 		return inner.map((entry) => ({ ...entry, reading: withWarning(entry.reading, cut) }));
 	}
 	if (!isZip(bytes)) return [{ name, reading: readPlain(bytes, name, options) }];
 	const listed = listZip(bytes, most);
 	if (!listed.ok) return [{ name, reading: refuse(listed.code, listed.message) }];
-	if (listed.entries.length === 0) return [{ name, reading: refuse('empty-archive', `${name} holds no files that could be recordings.`) }];
+	if (listed.entries.length === 0)
+		return [{ name, reading: refuse('empty-archive', `${name} holds no files that could be recordings.`) }];
 	const readings: NamedReading[] = [];
 	const seen = new Set<string>();
 	for (const entry of listed.entries) {
@@ -99,19 +111,31 @@ const EXTENSIONS: Record<FileFormat, RegExp> = {
 };
 
 function readPlain(bytes: Uint8Array, name: string, options: ReadOptions): Reading {
+	const most = options.maxUnpackedBytes ?? MOST_UNPACKED_BYTES;
+	if (bytes.length > most)
+		return refuse(
+			'too-large',
+			`${name} has ${Math.round(bytes.length / 1e6)} MB; at most ${Math.round(most / 1e6)} MB are read. No recording is that long; export each one for itself.`
+		);
 	if (bytes.length === 0) return refuse('empty-file', `${name} is empty (0 bytes). Copy it from the device again.`);
 	const reading = readByContent(bytes, name, options);
 	if (!reading.ok) return reading;
 	const { format } = reading.recording;
 	const extension = /\.[a-z0-9]+$/i.exec(name)?.[0];
 	if (extension === undefined || EXTENSIONS[format].test(extension)) return reading;
-	return withWarning(reading, { code: 'renamed', message: `The name ends in ${extension}, the content is ${format === 'rr-text' ? 'a list of RR intervals' : format.toUpperCase()}. It is read as what it is.` });
+	return withWarning(reading, {
+		code: 'renamed',
+		message: `The name ends in ${extension}, the content is ${format === 'rr-text' ? 'a list of RR intervals' : format.toUpperCase()}. It is read as what it is.`
+	});
 }
 
 function readByContent(bytes: Uint8Array, name: string, options: ReadOptions): Reading {
 	if (hasFitHeader(bytes)) return readFit(bytes, options);
 	if (!looksLikeText(bytes))
-		return refuse('unknown-format', `${name} is none of FIT, TCX, GPX, CSV or interval text. Export the recording in one of these formats.`);
+		return refuse(
+			'unknown-format',
+			`${name} is none of FIT, TCX, GPX, CSV or interval text. Export the recording in one of these formats.`
+		);
 	const { text, warnings } = decodeText(bytes);
 	const reading = readText(text, name, options);
 	return warnings.reduce(withWarning, reading);
@@ -122,14 +146,22 @@ function readText(text: string, name: string, options: ReadOptions): Reading {
 	if (start === '') return refuse('empty-file', `${name} holds nothing but blanks. Copy it from the device again.`);
 	if (/^<|^[^<\n]{0,20}<\?xml/.test(start)) {
 		// The root may stand behind comments and a document type.
-		const root = /<(?:[\w.-]+:)?(TrainingCenterDatabase|gpx|Activities|trk)[\s>/]/i.exec(text.slice(0, 65_536))?.[1].toLowerCase();
+		const root = /<(?:[\w.-]+:)?(TrainingCenterDatabase|gpx|Activities|trk)[\s>/]/i
+			.exec(text.slice(0, 65_536))?.[1]
+			.toLowerCase();
 		if (root === 'gpx' || root === 'trk') return readGpx(text, options);
 		if (root !== undefined) return readTcx(text, options);
 		if (/<!ENTITY/i.test(text.slice(0, 65_536))) return readGpx(text, options);
-		return refuse('unknown-xml', `${name} is XML, but neither TCX nor GPX. Export the recording as FIT, TCX, GPX or CSV.`);
+		return refuse(
+			'unknown-xml',
+			`${name} is XML, but neither TCX nor GPX. Export the recording as FIT, TCX, GPX or CSV.`
+		);
 	}
 	if (/^[{[]/.test(start) && /["\]}{\d\s]/.test(start[1] ?? ''))
-		return refuse('unknown-format', `${name} is JSON, which is not read. Export the recording as FIT, TCX, GPX or CSV.`);
+		return refuse(
+			'unknown-format',
+			`${name} is JSON, which is not read. Export the recording as FIT, TCX, GPX or CSV.`
+		);
 	if (looksLikeRrText(text)) return readRrText(text, options);
 	return readGuessedTable(text, options);
 }

@@ -37,8 +37,25 @@ const READABLE: Record<string, Row> = {
 	'fit-indoor-trainer-no-gps.fit': { minutes: 38, n: 2263, min: 81, max: 176 },
 	'fit-tiny-bigendian-devfields-no-timestamps.fit': { minutes: 0, n: 3, min: 140, max: 144 },
 	'fit-run-devfields.fit': { minutes: 57, n: 3424, min: 94, max: 146 },
-	'fit-swim-strap-stored-beats.fit': { minutes: 74, n: 0, min: 0, max: 0, gaps: 1, longestGapS: 70, duplicates: 2, storedBeats: true },
-	'fit-unfinished-truncated-279min.fit': { minutes: 279, n: 14387, min: 84, max: 160, gaps: 6, longestGapS: 1107, duplicates: 8 },
+	'fit-swim-strap-stored-beats.fit': {
+		minutes: 74,
+		n: 0,
+		min: 0,
+		max: 0,
+		gaps: 1,
+		longestGapS: 70,
+		duplicates: 2,
+		storedBeats: true
+	},
+	'fit-unfinished-truncated-279min.fit': {
+		minutes: 279,
+		n: 14387,
+		min: 84,
+		max: 160,
+		gaps: 6,
+		longestGapS: 1107,
+		duplicates: 8
+	},
 	'fit-chained-triathlon-strap.fit': { minutes: 158, n: 1430, min: 138, max: 187, storedBeats: true },
 	'fit-triathlon-summary-first.fit': { minutes: 67, n: 3364, min: 72, max: 178 },
 	'fit-triathlon-summary-last.fit': { minutes: 67, n: 3364, min: 72, max: 178 },
@@ -48,7 +65,15 @@ const READABLE: Record<string, Row> = {
 	'fit-split-records-duplicate-timestamps.fit': { minutes: 50, n: 2984, min: 81, max: 175, duplicates: 924 },
 	'fit-ride-241min-optical-dropouts.fit': { minutes: 241, n: 13251, min: 24, max: 179 },
 	'fit-ride-212min-misaligned-field.fit': { minutes: 212, n: 8946, min: 80, max: 168, gaps: 5, longestGapS: 683 },
-	'fit-ride-212min-gaps.fit': { minutes: 212, n: 10686, min: 115, max: 189, gaps: 26, longestGapS: 1019, duplicates: 15 },
+	'fit-ride-212min-gaps.fit': {
+		minutes: 212,
+		n: 10686,
+		min: 115,
+		max: 189,
+		gaps: 26,
+		longestGapS: 1019,
+		duplicates: 15
+	},
 	'fit-ride-393min-bigendian-devfields.fit': { minutes: 393, n: 13402, min: 66, max: 170, gaps: 45, longestGapS: 2530 },
 	'fit-indoor-rowing-devfields.fit': { minutes: 28, n: 1641, min: 80, max: 179 },
 	'fit-ride-smart-recording.fit': { minutes: 113, n: 2088, min: 98, max: 183, gaps: 34, longestGapS: 47 },
@@ -162,7 +187,9 @@ describe.skipIf(!existsSync(FOLDER))('real recordings (skipped where ../shared/f
 			if (!reading.ok) throw new Error(reading.refusal.message);
 			const trace = traceOf(reading.recording, 'heartRate');
 			expect([...(trace?.value ?? [])]).toEqual(rows.map((row) => row.heart_rate));
-			expect([...(trace?.tS ?? [])]).toEqual(rows.map((row) => new Date(row.timestamp as unknown as string).getTime() / 1000));
+			expect([...(trace?.tS ?? [])]).toEqual(
+				rows.map((row) => new Date(row.timestamp as unknown as string).getTime() / 1000)
+			);
 		});
 
 	it('gpx-ride-hr.gpx: gpxparser finds as many points at the same times', () => {

@@ -14,28 +14,44 @@ export interface DecodedText {
  * @returns the text without its byte-order mark; lines end with a line feed whatever the file used
  */
 export function decodeText(bytes: Uint8Array): DecodedText {
+	const utf16 = utf16Order(bytes);
+	const plain = withLineFeeds(utf16 ? new TextEncoder().encode(new TextDecoder(utf16).decode(bytes)) : bytes);
+	return decodeBytes(plain);
+}
+
+/** Every line end as one line feed. Done on bytes: a text of nothing but line ends would exhaust a regular expression. */
+function withLineFeeds(bytes: Uint8Array): Uint8Array {
+	let at = bytes.indexOf(0x0d);
+	if (at < 0) return bytes;
+	const out = new Uint8Array(bytes.length);
+	out.set(bytes.subarray(0, at));
+	let length = at;
+	for (; at < bytes.length; at++) {
+		if (bytes[at] !== 0x0d) out[length++] = bytes[at];
+		else if (bytes[at + 1] !== 0x0a) out[length++] = 0x0a;
+	}
+	return out.subarray(0, length);
+}
+
+function decodeBytes(bytes: Uint8Array): DecodedText {
 	const warnings: ReadingWarning[] = [];
 	let text: string;
-	const utf16 = utf16Order(bytes);
-	if (utf16) text = new TextDecoder(utf16).decode(bytes);
-	else {
+	try {
+		text = new TextDecoder('utf-8', { fatal: true }).decode(bytes);
+	} catch {
+		// A multi-byte character cut at the very end is a cut file, no other encoding.
+		const cut = withoutCutCharacter(bytes);
 		try {
-			text = new TextDecoder('utf-8', { fatal: true }).decode(bytes);
+			text = new TextDecoder('utf-8', { fatal: true }).decode(cut);
 		} catch {
-			// A multi-byte character cut at the very end is a cut file, no other encoding.
-			const cut = withoutCutCharacter(bytes);
-			try {
-				text = new TextDecoder('utf-8', { fatal: true }).decode(cut);
-			} catch {
-				text = new TextDecoder('windows-1252').decode(bytes);
-				warnings.push({
-					code: 'not-utf-8',
-					message: 'The text is not UTF-8. It is read as Western European (Windows-1252); accented letters in names may be wrong, figures are not.'
-				});
-			}
+			text = new TextDecoder('windows-1252').decode(bytes);
+			warnings.push({
+				code: 'not-utf-8',
+				message:
+					'The text is not UTF-8. It is read as Western European (Windows-1252); accented letters in names may be wrong, figures are not.'
+			});
 		}
 	}
-	if (text.includes('\r')) text = text.replace(/\r\n?/g, '\n');
 	return { text, warnings };
 }
 

@@ -15,7 +15,10 @@ export function timeText(tS: number): string {
 	}
 	const date = new Date(tS * 1000);
 	if (Number.isNaN(date.getTime())) return 'an impossible time';
-	return date.toISOString().replace('T', ' ').replace(/\.\d+Z$/, ' UTC');
+	return date
+		.toISOString()
+		.replace('T', ' ')
+		.replace(/\.\d+Z$/, ' UTC');
 }
 
 /** A span for a sentence: `47 s`, `18 min`, `2 h 5 min`, `27 days`. */

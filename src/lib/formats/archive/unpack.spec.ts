@@ -2,11 +2,20 @@ import { gzipSync, strToU8, zipSync } from 'fflate';
 import { describe, expect, it } from 'vitest';
 import { readFile, readFiles } from '..';
 
-const csv = (bpm: number) => strToU8('time,hr\n' + Array.from({ length: 20 }, (_, i) => `${new Date((1_715_000_000 + i) * 1000).toISOString()},${bpm + i}`).join('\n'));
+const csv = (bpm: number) =>
+	strToU8(
+		'time,hr\n' +
+			Array.from({ length: 20 }, (_, i) => `${new Date((1_715_000_000 + i) * 1000).toISOString()},${bpm + i}`).join(
+				'\n'
+			)
+	);
 
 describe('compressed files', () => {
 	it('reads a gzip as what is in it', () => {
-		expect(readFile(gzipSync(csv(80)), 'a.csv.gz')).toMatchObject({ ok: true, recording: { format: 'csv', warnings: [] } });
+		expect(readFile(gzipSync(csv(80)), 'a.csv.gz')).toMatchObject({
+			ok: true,
+			recording: { format: 'csv', warnings: [] }
+		});
 	});
 
 	it('reads what a cut gzip still gives, and says so', () => {
@@ -18,9 +27,20 @@ describe('compressed files', () => {
 	});
 
 	it('reads each recording of a zip and passes over what programs add', () => {
-		const zip = zipSync({ 'day/strap.csv': csv(80), 'day/watch.CSV': csv(90), '__MACOSX/day/._strap.csv': strToU8('junk'), 'day/.DS_Store': strToU8('junk'), 'day/Thumbs.db': strToU8('junk'), 'note.txt': strToU8('the wearer felt well') });
+		const zip = zipSync({
+			'day/strap.csv': csv(80),
+			'day/watch.CSV': csv(90),
+			'__MACOSX/day/._strap.csv': strToU8('junk'),
+			'day/.DS_Store': strToU8('junk'),
+			'day/Thumbs.db': strToU8('junk'),
+			'note.txt': strToU8('the wearer felt well')
+		});
 		const readings = readFiles(zip, 'day.zip');
-		expect(readings.map(({ name, reading }) => [name, reading.ok])).toEqual([['day/strap.csv', true], ['day/watch.CSV', true], ['note.txt', false]]);
+		expect(readings.map(({ name, reading }) => [name, reading.ok])).toEqual([
+			['day/strap.csv', true],
+			['day/watch.CSV', true],
+			['note.txt', false]
+		]);
 		expect(readFile(zip, 'day.zip')).toMatchObject({ ok: false, refusal: { code: 'several-recordings' } });
 	});
 
@@ -31,8 +51,14 @@ describe('compressed files', () => {
 	it('refuses a small file that would unpack to more than the bound, without unpacking it all', () => {
 		const zeros = new Uint8Array(30_000_000);
 		const options = { maxUnpackedBytes: 10_000_000 };
-		expect(readFile(gzipSync(zeros), 'a.gz', options)).toMatchObject({ ok: false, refusal: { code: 'unpacks-too-large' } });
-		expect(readFile(zipSync({ 'a.csv': zeros }), 'a.zip', options)).toMatchObject({ ok: false, refusal: { code: 'unpacks-too-large' } });
+		expect(readFile(gzipSync(zeros), 'a.gz', options)).toMatchObject({
+			ok: false,
+			refusal: { code: 'unpacks-too-large' }
+		});
+		expect(readFile(zipSync({ 'a.csv': zeros }), 'a.zip', options)).toMatchObject({
+			ok: false,
+			refusal: { code: 'unpacks-too-large' }
+		});
 	});
 
 	it('does not follow archives into archives without end', () => {
@@ -49,13 +75,20 @@ describe('compressed files', () => {
 
 describe('names and contents', () => {
 	it('goes by content and tells that the name says otherwise', () => {
-		expect(readFile(csv(80), 'walk.fit')).toMatchObject({ ok: true, recording: { format: 'csv', warnings: [{ code: 'renamed' }] } });
+		expect(readFile(csv(80), 'walk.fit')).toMatchObject({
+			ok: true,
+			recording: { format: 'csv', warnings: [{ code: 'renamed' }] }
+		});
 	});
 
 	it.each([
 		['nothing', new Uint8Array(0), 'empty-file'],
 		['blanks', strToU8('  \n \n'), 'empty-file'],
-		['a picture', Uint8Array.from([0x89, 0x50, 0x4e, 0x47, 0x0d, 0x0a, 0x1a, 0x0a, 0, 0, 0, 0x0d, 0, 1, 2, 3]), 'unknown-format'],
+		[
+			'a picture',
+			Uint8Array.from([0x89, 0x50, 0x4e, 0x47, 0x0d, 0x0a, 0x1a, 0x0a, 0, 0, 0, 0x0d, 0, 1, 2, 3]),
+			'unknown-format'
+		],
 		['JSON', strToU8('{"heart_rate": [80, 81]}'), 'unknown-format'],
 		['a letter', strToU8('Dear tester,\nthe strap is in the box.\n'), 'no-heart-rate']
 	])('refuses %s with its own code', (_, bytes, code) => {

@@ -12,7 +12,12 @@ export function isGzip(bytes: Uint8Array): boolean {
 }
 
 export function isZip(bytes: Uint8Array): boolean {
-	return bytes.length >= 4 && bytes[0] === 0x50 && bytes[1] === 0x4b && ((bytes[2] === 3 && bytes[3] === 4) || (bytes[2] === 5 && bytes[3] === 6));
+	return (
+		bytes.length >= 4 &&
+		bytes[0] === 0x50 &&
+		bytes[1] === 0x4b &&
+		((bytes[2] === 3 && bytes[3] === 4) || (bytes[2] === 5 && bytes[3] === 6))
+	);
 }
 
 function tooLarge(most: number): { ok: false; code: string; message: string } {
@@ -39,9 +44,15 @@ export function gunzipBounded(bytes: Uint8Array, most: number): Unpacked {
 		if (final) complete = true;
 	});
 	try {
-		for (let at = 0; at < bytes.length && length <= most; at += CHUNK) stream.push(bytes.subarray(at, at + CHUNK), at + CHUNK >= bytes.length);
+		for (let at = 0; at < bytes.length && length <= most; at += CHUNK)
+			stream.push(bytes.subarray(at, at + CHUNK), at + CHUNK >= bytes.length);
 	} catch (error) {
-		if (length === 0) return { ok: false, code: 'damaged-archive', message: `The compressed file is damaged and cannot be unpacked (${error instanceof Error ? error.message : 'unknown fault'}). Copy it again.` };
+		if (length === 0)
+			return {
+				ok: false,
+				code: 'damaged-archive',
+				message: `The compressed file is damaged and cannot be unpacked (${error instanceof Error ? error.message : 'unknown fault'}). Copy it again.`
+			};
 		complete = false;
 	}
 	if (length > most) return tooLarge(most);
@@ -66,7 +77,10 @@ export function isJunkEntry(name: string): boolean {
  *
  * @returns names with their stated size; a refusal where the archive is damaged or too large altogether
  */
-export function listZip(bytes: Uint8Array, most: number): { ok: true; entries: UnzipFileInfo[] } | { ok: false; code: string; message: string } {
+export function listZip(
+	bytes: Uint8Array,
+	most: number
+): { ok: true; entries: UnzipFileInfo[] } | { ok: false; code: string; message: string } {
 	const entries: UnzipFileInfo[] = [];
 	let total = 0;
 	let count = 0;
@@ -81,9 +95,18 @@ export function listZip(bytes: Uint8Array, most: number): { ok: true; entries: U
 			}
 		});
 	} catch (error) {
-		return { ok: false, code: 'damaged-archive', message: `The archive is damaged or cut (${error instanceof Error ? error.message : 'unknown fault'}). Copy it again, or unpack it with another program.` };
+		return {
+			ok: false,
+			code: 'damaged-archive',
+			message: `The archive is damaged or cut (${error instanceof Error ? error.message : 'unknown fault'}). Copy it again, or unpack it with another program.`
+		};
 	}
-	if (count > MOST_ENTRIES) return { ok: false, code: 'too-many-entries', message: `The archive holds ${count} files; at most ${MOST_ENTRIES} are read at once. Split it.` };
+	if (count > MOST_ENTRIES)
+		return {
+			ok: false,
+			code: 'too-many-entries',
+			message: `The archive holds ${count} files; at most ${MOST_ENTRIES} are read at once. Split it.`
+		};
 	if (total > most) return tooLarge(most);
 	return { ok: true, entries };
 }
@@ -97,6 +120,10 @@ export function unzipEntry(bytes: Uint8Array, name: string): Unpacked {
 		if (!content) return { ok: false, code: 'damaged-archive', message: `${name} could not be found in the archive.` };
 		return { ok: true, bytes: content, cut: false };
 	} catch (error) {
-		return { ok: false, code: 'damaged-archive', message: `${name} could not be unpacked (${error instanceof Error ? error.message : 'unknown fault'}). Copy the archive again.` };
+		return {
+			ok: false,
+			code: 'damaged-archive',
+			message: `${name} could not be unpacked (${error instanceof Error ? error.message : 'unknown fault'}). Copy the archive again.`
+		};
 	}
 }

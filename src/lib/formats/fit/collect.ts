@@ -12,6 +12,9 @@ export const FIT_EPOCH_S = 631_065_600;
 /** Smaller time stamps count from when the device was switched on. */
 const FIRST_ABSOLUTE = 0x1000_0000;
 
+/** No device writes more descriptions of itself or more sessions; a file made of nothing else must not fill the memory. */
+const MOST_ENTRIES = 10_000;
+
 /** One bout as a `session` message describes it. */
 export interface SessionSpan {
 	startS: number;
@@ -49,7 +52,8 @@ class Collector {
 	private readonly view: DataView;
 	private readonly table = new SampleTable(4096);
 	private readonly storedBeats = new StoredBeatReader();
-	private readonly plans = new Map<Definition, RecordPlan>();
+	/** Weak, because some devices define their records anew before each one. */
+	private readonly plans = new WeakMap<Definition, RecordPlan>();
 	private readonly developerFields = new Map<number, DeveloperField>();
 	private readonly found: Omit<Collected, 'report'>;
 	private lastRecordS = NaN;
@@ -83,6 +87,7 @@ class Collector {
 
 	private message(definition: Definition, at: number, timestamp: number): void {
 		const tS = timestamp + FIT_EPOCH_S;
+		const { fileIds, devices, sessions } = this.found;
 		switch (definition.globalNumber) {
 			case 20:
 				return this.record(definition, at, timestamp);
@@ -96,13 +101,23 @@ class Collector {
 			case 103:
 				return this.monitoring(definition, at, timestamp);
 			case 0:
-				this.found.fileIds.push(this.device(definition, at, { maker: 1, product: 2, serial: 3, name: 8 }));
+				if (fileIds.length < MOST_ENTRIES)
+					fileIds.push(this.device(definition, at, { maker: 1, product: 2, serial: 3, name: 8 }));
 				if (Number.isNaN(this.found.createdS)) this.found.createdS = this.number(definition, at, 4) + FIT_EPOCH_S;
 				return;
 			case 23:
-				this.found.devices.push(
-					this.device(definition, at, { maker: 2, product: 4, serial: 3, name: 27, software: 5, index: 0, sensorType: 1 })
-				);
+				if (devices.length < MOST_ENTRIES)
+					devices.push(
+						this.device(definition, at, {
+							maker: 2,
+							product: 4,
+							serial: 3,
+							name: 27,
+							software: 5,
+							index: 0,
+							sensorType: 1
+						})
+					);
 				return;
 			case 49:
 				if (Number.isNaN(this.found.creatorSoftware)) this.found.creatorSoftware = this.number(definition, at, 0);
@@ -111,7 +126,8 @@ class Collector {
 				const startS = this.number(definition, at, 2) + FIT_EPOCH_S;
 				const elapsedS = this.number(definition, at, 7) / 1000;
 				const sport = this.number(definition, at, 5);
-				this.found.sessions.push({ startS, endS: Number.isNaN(elapsedS) ? tS : startS + elapsedS, sport });
+				if (sessions.length < MOST_ENTRIES)
+					sessions.push({ startS, endS: Number.isNaN(elapsedS) ? tS : startS + elapsedS, sport });
 				return;
 			}
 			case 12:
@@ -124,7 +140,7 @@ class Collector {
 	}
 
 	private sport(number: number): void {
-		if (!Number.isNaN(number)) this.found.sports.push(number);
+		if (!Number.isNaN(number) && this.found.sports.length < MOST_ENTRIES) this.found.sports.push(number);
 	}
 
 	private record(definition: Definition, at: number, timestamp: number): void {
@@ -192,7 +208,15 @@ class Collector {
 	private device(
 		definition: Definition,
 		at: number,
-		fields: { maker: number; product: number; serial: number; name: number; software?: number; index?: number; sensorType?: number }
+		fields: {
+			maker: number;
+			product: number;
+			serial: number;
+			name: number;
+			software?: number;
+			index?: number;
+			sensorType?: number;
+		}
 	): DeviceEntry {
 		const optional = (number: number | undefined) => (number === undefined ? NaN : this.number(definition, at, number));
 		return {

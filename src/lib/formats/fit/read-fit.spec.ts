@@ -8,7 +8,10 @@ import { readFit } from './read-fit';
 
 const START = 1_000_000_000;
 const START_S = START + FIT_EPOCH_S;
-const HR_RECORD: FieldToWrite[] = [[253, UINT32], [3, UINT8]];
+const HR_RECORD: FieldToWrite[] = [
+	[253, UINT32],
+	[3, UINT8]
+];
 
 function recordingOf(reading: Reading): Recording {
 	if (!reading.ok) throw new Error(`${reading.refusal.code}: ${reading.refusal.message}`);
@@ -16,8 +19,12 @@ function recordingOf(reading: Reading): Recording {
 }
 
 const codes = (recording: Recording) => recording.warnings.map((warning) => warning.code);
-const values = (recording: Recording, kind: 'heartRate' | 'cadence' | 'speed' | 'rrInterval') => [...(traceOf(recording, kind)?.value ?? [])];
-const times = (recording: Recording, kind: 'heartRate' | 'rrInterval' = 'heartRate') => [...(traceOf(recording, kind)?.tS ?? [])];
+const values = (recording: Recording, kind: 'heartRate' | 'cadence' | 'speed' | 'rrInterval') => [
+	...(traceOf(recording, kind)?.value ?? [])
+];
+const times = (recording: Recording, kind: 'heartRate' | 'rrInterval' = 'heartRate') => [
+	...(traceOf(recording, kind)?.tS ?? [])
+];
 
 /** Records of one definition, each a time and a heart rate. */
 function records(out: FitBytes, rows: [number, number][], local = 0): void {
@@ -136,7 +143,10 @@ describe('records', () => {
 	it('merges position and heart rate that stand in two records of one second', () => {
 		const out = new FitBytes(true);
 		out.define(0, 20, HR_RECORD);
-		out.define(1, 20, [[253, UINT32], [6, UINT16]]);
+		out.define(1, 20, [
+			[253, UINT32],
+			[6, UINT16]
+		]);
 		for (let i = 0; i < 5; i++) {
 			records(out, [[i, 120 + i]]);
 			out.put(1, UINT8);
@@ -151,7 +161,11 @@ describe('records', () => {
 
 	it('reads what stands around a field whose size is no multiple of its type', () => {
 		const out = new FitBytes(true);
-		out.define(0, 20, [[253, UINT32], [6, UINT16, 3], [3, UINT8]]);
+		out.define(0, 20, [
+			[253, UINT32],
+			[6, UINT16, 3],
+			[3, UINT8]
+		]);
 		for (let i = 0; i < 5; i++) {
 			out.put(0, UINT8);
 			out.put(START + i, UINT32);
@@ -165,7 +179,17 @@ describe('records', () => {
 	});
 
 	it('tells zeros from empty fields and counts neither', () => {
-		const recording = recordingOf(readFit(simple([[0, 0], [1, 255], [2, 80], [3, 81], [4, 0]])));
+		const recording = recordingOf(
+			readFit(
+				simple([
+					[0, 0],
+					[1, 255],
+					[2, 80],
+					[3, 81],
+					[4, 0]
+				])
+			)
+		);
 		expect(values(recording, 'heartRate')).toEqual([80, 81]);
 		const told = recording.warnings.map((w) => `${w.code}: ${w.message}`);
 		expect(told[0]).toMatch(/^heart-rate-zero: 2 heart-rate values of 0/);
@@ -179,19 +203,46 @@ describe('records', () => {
 	});
 
 	it('keeps 24 and 231 bpm as the file has them, and says so', () => {
-		const recording = recordingOf(readFit(simple([[0, 24], [1, 231], [2, 80]])));
+		const recording = recordingOf(
+			readFit(
+				simple([
+					[0, 24],
+					[1, 231],
+					[2, 80]
+				])
+			)
+		);
 		expect(values(recording, 'heartRate')).toEqual([24, 231, 80]);
 		expect(codes(recording)).toEqual(['implausible-heart-rate', 'implausible-heart-rate']);
 	});
 
 	it('puts records in order where the clock steps back, changes no time, and says so', () => {
-		const recording = recordingOf(readFit(simple([[0, 80], [1, 81], [5, 85], [2, 82], [3, 83]])));
+		const recording = recordingOf(
+			readFit(
+				simple([
+					[0, 80],
+					[1, 81],
+					[5, 85],
+					[2, 82],
+					[3, 83]
+				])
+			)
+		);
 		expect(times(recording).map((t) => t - START_S)).toEqual([0, 1, 2, 3, 5]);
 		expect(codes(recording)).toEqual(['backward-step']);
 	});
 
 	it('keeps a jump of 27 days as it is and tells it as a gap and as a jump', () => {
-		const recording = recordingOf(readFit(simple([[0, 80], [1, 81], [27 * 86_400, 82], [27 * 86_400 + 1, 83]])));
+		const recording = recordingOf(
+			readFit(
+				simple([
+					[0, 80],
+					[1, 81],
+					[27 * 86_400, 82],
+					[27 * 86_400 + 1, 83]
+				])
+			)
+		);
 		expect(codes(recording)).toEqual(['gap', 'clock-jump']);
 		expect(recording.warnings[1].message).toContain('27 days');
 	});
@@ -215,7 +266,12 @@ describe('records', () => {
 
 function withDeveloperField(plainBpm: number): Uint8Array {
 	const out = new FitBytes(true);
-	out.define(0, 206, [[0, UINT8], [1, UINT8], [2, UINT8], [3, STRING, 16]]);
+	out.define(0, 206, [
+		[0, UINT8],
+		[1, UINT8],
+		[2, UINT8],
+		[3, STRING, 16]
+	]);
 	out.put(0, UINT8);
 	out.put(0, UINT8);
 	out.put(7, UINT8);
@@ -234,7 +290,10 @@ function withDeveloperField(plainBpm: number): Uint8Array {
 describe('beats', () => {
 	it('unpacks 12-bit counters of stored beats and puts them on the clock of the first message', () => {
 		const out = new FitBytes(true);
-		out.define(0, 20, [[253, UINT32], [6, UINT16]]);
+		out.define(0, 20, [
+			[253, UINT32],
+			[6, UINT16]
+		]);
 		for (let i = 0; i < 8; i++) {
 			out.put(0, UINT8);
 			out.put(START + i, UINT32);
@@ -242,12 +301,19 @@ describe('beats', () => {
 		}
 		const first = 5000;
 		const counters = Array.from({ length: 8 }, (_, i) => first + 768 * (i + 1));
-		out.define(1, 132, [[253, UINT32], [9, UINT32], [6, UINT8]]);
+		out.define(1, 132, [
+			[253, UINT32],
+			[9, UINT32],
+			[6, UINT8]
+		]);
 		out.put(1, UINT8);
 		out.put(START, UINT32);
 		out.put(first, UINT32);
 		out.put(79, UINT8);
-		out.define(2, 132, [[6, UINT8, 8], [10, BYTE, 12]]);
+		out.define(2, 132, [
+			[6, UINT8, 8],
+			[10, BYTE, 12]
+		]);
 		out.put(2, UINT8);
 		for (let i = 0; i < 8; i++) out.put(80 + i, UINT8);
 		for (let i = 0; i < 8; i += 2) {
@@ -265,7 +331,10 @@ describe('beats', () => {
 
 	it('tells sampled RR values from a list of beats: their sum is not the span', () => {
 		const out = new FitBytes(true);
-		out.define(0, 20, [[253, UINT32], [6, UINT16]]);
+		out.define(0, 20, [
+			[253, UINT32],
+			[6, UINT16]
+		]);
 		out.define(1, 78, [[0, UINT16]]);
 		for (let i = 0; i < 120; i++) {
 			out.put(0, UINT8);
@@ -285,7 +354,10 @@ describe('beats', () => {
 		out.define(0, 55, [[253, UINT32]]);
 		out.put(0, UINT8);
 		out.put(START, UINT32);
-		out.define(1, 55, [[26, UINT16], [27, UINT8]]);
+		out.define(1, 55, [
+			[26, UINT16],
+			[27, UINT8]
+		]);
 		for (let i = 1; i <= 3; i++) {
 			out.put(1, UINT8);
 			out.put((START + 60 * i) & 0xffff, UINT16);
@@ -300,14 +372,22 @@ describe('beats', () => {
 describe('cadence', () => {
 	function run(cadence: number, sport: number): Recording {
 		const out = new FitBytes(true);
-		out.define(0, 20, [[253, UINT32], [3, UINT8], [4, UINT8]]);
+		out.define(0, 20, [
+			[253, UINT32],
+			[3, UINT8],
+			[4, UINT8]
+		]);
 		for (let i = 0; i < 5; i++) {
 			out.put(0, UINT8);
 			out.put(START + i, UINT32);
 			out.put(120, UINT8);
 			out.put(cadence, UINT8);
 		}
-		out.define(1, 18, [[253, UINT32], [2, UINT32], [5, ENUM]]);
+		out.define(1, 18, [
+			[253, UINT32],
+			[2, UINT32],
+			[5, ENUM]
+		]);
 		out.put(1, UINT8);
 		out.put(START + 4, UINT32);
 		out.put(START, UINT32);
@@ -352,7 +432,9 @@ describe('a second, independent reader', () => {
 			]
 		};
 		const bytes = writeFit(written);
-		const other = await new FitParser({ force: false, mode: 'list', speedUnit: 'm/s', lengthUnit: 'm' }).parseAsync(Buffer.from(bytes) as Buffer<ArrayBuffer>);
+		const other = await new FitParser({ force: false, mode: 'list', speedUnit: 'm/s', lengthUnit: 'm' }).parseAsync(
+			Buffer.from(bytes) as Buffer<ArrayBuffer>
+		);
 		const rows = other.records ?? [];
 		expect(rows.map((row) => row.heart_rate)).toEqual([...written.traces[0].value]);
 		expect(rows.map((row) => row.cadence)).toEqual([...written.traces[1].value]);

@@ -91,7 +91,8 @@ function structureWarnings(collected: Collected): ReadingWarning[] {
 	if (collected.relativeClock)
 		warnings.push({
 			code: 'no-clock',
-			message: "The time stamps count from when the device was switched on: its clock was never set. Give the start time, or align by shape."
+			message:
+				'The time stamps count from when the device was switched on: its clock was never set. Give the start time, or align by shape.'
 		});
 	return warnings;
 }
@@ -142,7 +143,10 @@ function useDeveloperFields(table: SampleTable, chosen: string | null): ReadingW
 		const [, kind, label] = column.split(':');
 		if (column === chosen || (!table.holds(kind) && table.holds(column))) {
 			table.rename(column, kind);
-			warnings.push({ code: 'developer-field', message: `The ${kind === 'heartRate' ? 'heart rate' : kind} comes from the developer field '${label}'.` });
+			warnings.push({
+				code: 'developer-field',
+				message: `The ${kind === 'heartRate' ? 'heart rate' : kind} comes from the developer field '${label}'.`
+			});
 		} else if (kind === 'heartRate' && table.holds(column)) {
 			warnings.push({
 				code: 'second-heart-rate-source',
@@ -174,7 +178,8 @@ function activityAndCadence(collected: Collected): { activity: string | null; ca
 		const spans = known.filter((session) => sportName(session.sport) === name);
 		const rows: number[] = [];
 		for (let row = 0; row < table.n; row++)
-			if (distinct.length === 1 || spans.some((span) => table.tS[row] >= span.startS && table.tS[row] <= span.endS)) rows.push(row);
+			if (distinct.length === 1 || spans.some((span) => table.tS[row] >= span.startS && table.tS[row] <= span.endS))
+				rows.push(row);
 		const warning = toSteps(table, rows, name);
 		if (warning) cadenceWarnings.push(warning);
 	}

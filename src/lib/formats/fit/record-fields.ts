@@ -79,7 +79,10 @@ export function planRecord(definition: Definition, developerFields: Map<number, 
 	const oddFields: number[] = [];
 	for (const field of definition.fields) {
 		if (field.number === 8 && field.size === 3) {
-			best.set('packed', { step: { column: 'speed', at: field.offset, type: 13, scale: 100, offset: 0, packed: true }, rank: 0 });
+			best.set('packed', {
+				step: { column: 'speed', at: field.offset, type: 13, scale: 100, offset: 0, packed: true },
+				rank: 0
+			});
 			continue;
 		}
 		const target = RECORD_FIELDS[field.number];
@@ -91,7 +94,14 @@ export function planRecord(definition: Definition, developerFields: Map<number, 
 		const present = best.get(target.column);
 		if (present && present.rank >= target.rank) continue;
 		best.set(target.column, {
-			step: { column: target.column, at: field.offset, type: field.type, scale: target.scale, offset: target.offset, packed: false },
+			step: {
+				column: target.column,
+				at: field.offset,
+				type: field.type,
+				scale: target.scale,
+				offset: target.offset,
+				packed: false
+			},
 			rank: target.rank
 		});
 	}

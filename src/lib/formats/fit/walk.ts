@@ -39,6 +39,8 @@ export interface Definition {
 	size: number;
 	/** Position of the time stamp within the message, or −1. */
 	timestampOffset: number;
+	/** Bytes of the file that hold the definition. */
+	definedIn: { from: number; length: number };
 }
 
 /**
@@ -58,6 +60,13 @@ export interface WalkReport {
 const TIMESTAMP_FIELD = 253;
 const EMPTY_UINT32 = 0xffffffff;
 const DAY_S = 86400;
+const MOST_TOLD = 20;
+/** Messages that may be walked on trial in one file, which bounds the time a damaged one can take. */
+const TRIAL_BUDGET = 3_000_000;
+
+interface TrialBudget {
+	messages: number;
+}
 
 /** State within one part: its definitions and the clock that compressed headers count from. */
 interface PartState {
@@ -87,11 +96,12 @@ export function hasFitHeader(bytes: Uint8Array, at = 0): boolean {
 export function walkFit(bytes: Uint8Array, onMessage: MessageHandler): WalkReport {
 	const view = new DataView(bytes.buffer, bytes.byteOffset, bytes.byteLength);
 	const warnings: ReadingWarning[] = [];
+	const budget = { messages: TRIAL_BUDGET };
 	let parts = 0;
 	let at = 0;
 	while (hasFitHeader(bytes, at)) {
 		parts++;
-		at = walkPart(bytes, view, at, parts, onMessage, warnings);
+		at = walkPart(bytes, view, at, parts, onMessage, warnings, budget);
 		if (at >= bytes.length || hasFitHeader(bytes, at)) continue;
 		const next = nextHeader(bytes, at);
 		if (bytes.length - at > 2)
@@ -103,7 +113,23 @@ export function walkFit(bytes: Uint8Array, onMessage: MessageHandler): WalkRepor
 		if (next < 0) break;
 		at = next;
 	}
-	return { parts, warnings };
+	return { parts, warnings: firstOfEach(warnings) };
+}
+
+/** A file of a thousand damaged parts needs no thousand sentences. */
+function firstOfEach(warnings: ReadingWarning[]): ReadingWarning[] {
+	const counts = new Map<string, number>();
+	for (const { code } of warnings) counts.set(code, (counts.get(code) ?? 0) + 1);
+	const told = new Map<string, number>();
+	return warnings.flatMap((warning) => {
+		const nth = (told.get(warning.code) ?? 0) + 1;
+		told.set(warning.code, nth);
+		if (nth < MOST_TOLD) return [warning];
+		const more = (counts.get(warning.code) ?? 0) - MOST_TOLD;
+		return nth > MOST_TOLD
+			? []
+			: [more > 0 ? { ...warning, message: `${warning.message} ${more} more of this kind are not listed.` } : warning];
+	});
 }
 
 function nextHeader(bytes: Uint8Array, from: number): number {
@@ -118,7 +144,8 @@ function walkPart(
 	start: number,
 	part: number,
 	onMessage: MessageHandler,
-	warnings: ReadingWarning[]
+	warnings: ReadingWarning[],
+	budget: TrialBudget
 ): number {
 	const headerSize = bytes[start];
 	const dataSize = view.getUint32(start + 4, true);
@@ -163,18 +190,18 @@ function walkPart(
 			at: { byte: end }
 		});
 	}
-	walkMessages(bytes, view, dataStart, end, state, onMessage, warnings);
+	walkMessages(bytes, view, dataStart, end, state, onMessage, warnings, budget);
 	let next = Math.min(end + 2, bytes.length);
 	if (dataSize !== 0 && bytes.length - next >= 32 && !hasFitHeader(bytes, next)) {
 		for (const from of [end, next]) {
-			const trial = tryMessages(bytes, view, from, bytes.length, state, 100_000);
+			const trial = tryMessages(bytes, view, from, bytes.length, state, 1_000_000, budget);
 			if (trial.timed < 3 || bytes.length - trial.at > 64) continue;
 			warnings.push({
 				code: 'stale-size',
 				message: `The header${where} names ${dataSize} bytes, yet messages go on behind them. They are read too.`,
 				at: { byte: from }
 			});
-			walkMessages(bytes, view, from, trial.at, state, onMessage, warnings);
+			walkMessages(bytes, view, from, trial.at, state, onMessage, warnings, budget);
 			next = bytes.length;
 			break;
 		}
@@ -189,7 +216,8 @@ function walkMessages(
 	end: number,
 	state: PartState,
 	onMessage: MessageHandler,
-	warnings: ReadingWarning[]
+	warnings: ReadingWarning[],
+	budget: TrialBudget
 ): void {
 	let at = from;
 	let resumed = 0;
@@ -209,7 +237,7 @@ function walkMessages(
 				});
 			return;
 		}
-		const resume = resumed < 50 ? findMessages(bytes, view, at + 1, end, state) : -1;
+		const resume = resumed < 50 ? findMessages(bytes, view, at + 1, end, state, budget) : -1;
 		resumed++;
 		warnings.push({
 			code: 'damaged-bytes',
@@ -243,7 +271,10 @@ function step(
 		const next = at + 1 + definition.size;
 		if (next > end) return CUT;
 		let timestamp = state.lastTimestamp;
-		const own = definition.timestampOffset < 0 ? EMPTY_UINT32 : view.getUint32(at + 1 + definition.timestampOffset, definition.little);
+		const own =
+			definition.timestampOffset < 0
+				? EMPTY_UINT32
+				: view.getUint32(at + 1 + definition.timestampOffset, definition.little);
 		// A compressed header holds the low five bits of the time; a smaller value than before means that 32 s rolled over.
 		if (own !== EMPTY_UINT32) timestamp = own;
 		else if (timestamp === timestamp) timestamp += ((header & 0x1f) - (timestamp & 0x1f)) & 0x1f;
@@ -252,6 +283,8 @@ function step(
 		return next;
 	}
 	if (header & 0x40) {
+		const present = state.definitions[header & 0x0f];
+		if (present && isSameDefinition(bytes, at, present, end)) return at + present.definedIn.length;
 		const definition = readDefinition(bytes, view, at, end);
 		if (typeof definition === 'number') return definition;
 		state.definitions[header & 0x0f] = definition.definition;
@@ -268,6 +301,14 @@ function step(
 	}
 	onMessage?.(definition, at + 1, timestamp);
 	return next;
+}
+
+/** Some devices define their records anew before each one; the definition is then kept as it is. */
+function isSameDefinition(bytes: Uint8Array, at: number, present: Definition, end: number): boolean {
+	const { from, length } = present.definedIn;
+	if (at + length > end) return false;
+	for (let i = 0; i < length; i++) if (bytes[at + i] !== bytes[from + i]) return false;
+	return true;
 }
 
 function readDefinition(
@@ -314,7 +355,8 @@ function readDefinition(
 			fields,
 			developerFields,
 			size: offset,
-			timestampOffset
+			timestampOffset,
+			definedIn: { from: at, length: next - at }
 		},
 		next
 	};
@@ -327,14 +369,15 @@ function tryMessages(
 	from: number,
 	end: number,
 	state: PartState,
-	limit: number
+	limit: number,
+	budget: TrialBudget
 ): { at: number; count: number; timed: number } {
 	const trial: PartState = { definitions: state.definitions.slice(), lastTimestamp: state.lastTimestamp };
 	let at = from;
 	let count = 0;
 	let timed = 0;
 	let before = state.lastTimestamp;
-	while (at < end && count < limit) {
+	while (at < end && count < limit && budget.messages-- > 0) {
 		let plausible = true;
 		const next = step(bytes, view, at, end, trial, (_definition, _at, timestamp) => {
 			if (timestamp !== timestamp) return;
@@ -350,10 +393,17 @@ function tryMessages(
 }
 
 /** The next byte from which ten messages, three of them with a fitting time, can be walked; −1 where there is none. */
-function findMessages(bytes: Uint8Array, view: DataView, from: number, end: number, state: PartState): number {
+function findMessages(
+	bytes: Uint8Array,
+	view: DataView,
+	from: number,
+	end: number,
+	state: PartState,
+	budget: TrialBudget
+): number {
 	const last = Math.min(end, from + 65536);
-	for (let at = from; at < last; at++) {
-		const trial = tryMessages(bytes, view, at, end, state, 10);
+	for (let at = from; at < last && budget.messages > 0; at++) {
+		const trial = tryMessages(bytes, view, at, end, state, 10, budget);
 		if (trial.timed >= 3 && (trial.count === 10 || end - trial.at <= 2)) return at;
 	}
 	return -1;

@@ -108,6 +108,7 @@ export class LineWalker {
 }
 
 function openQuote(line: string): boolean {
+	if (line.length > 65_536) return false;
 	let quotes = 0;
 	for (let i = line.indexOf('"'); i >= 0; i = line.indexOf('"', i + 1)) quotes++;
 	return quotes % 2 === 1;

@@ -61,7 +61,11 @@ export function activityOf(facts: Facts): string | null {
 
 /** The start as the lines above the table give it: a moment, or a date and a time of day. */
 export function startOf(facts: Facts): { tS: number; hasZone: boolean; hasTime: boolean } | null {
-	const candidates = [...facts].filter(([name]) => /\b(start|started|begin|began|date|datum|recorded|recording|created|time)\b/.test(name) && !/\b(end|stop|birth|duration)\b/.test(name));
+	const candidates = [...facts].filter(
+		([name]) =>
+			/\b(start|started|begin|began|date|datum|recorded|recording|created|time)\b/.test(name) &&
+			!/\b(end|stop|birth|duration)\b/.test(name)
+	);
 	const order = dateOrderOf(candidates.map(([, value]) => value)).order;
 	let day: { tS: number; hasZone: boolean; hasTime: boolean } | null = null;
 	let dayS = NaN;

@@ -9,7 +9,15 @@ import type { ChannelKind } from '../recording';
 import { cellNumber, LineWalker, splitCells, type Delimiter } from './cells';
 import { columnMeaning, nameWords, type ColumnMeaning } from './column-meaning';
 import type { ChannelColumn, TableGuess, TableMapping } from './mapping';
-import { dateOrderOf, numericTimeForm, parseDateTime, parseElapsedClock, parseTimeOfDay, type DateOrder, type TimeForm } from './time-form';
+import {
+	dateOrderOf,
+	numericTimeForm,
+	parseDateTime,
+	parseElapsedClock,
+	parseTimeOfDay,
+	type DateOrder,
+	type TimeForm
+} from './time-form';
 
 const LOOKED_AT = 400;
 const HEADER_WITHIN = 120;
@@ -96,8 +104,11 @@ function bestHeader(lines: string[]): Header | null {
 
 function scoreHeader(lines: string[], index: number, delimiter: Delimiter, names: string[]): Header | null {
 	const meanings = names.map((name) => columnMeaning(name));
-	const long = meanings.some((meaning) => meaning?.role === 'name') && meanings.some((meaning) => meaning?.role === 'value');
-	const hearts = meanings.flatMap((meaning, i) => (meaning?.role === 'channel' && (meaning.kind === 'heartRate' || meaning.kind === 'rrInterval') ? [i] : []));
+	const long =
+		meanings.some((meaning) => meaning?.role === 'name') && meanings.some((meaning) => meaning?.role === 'value');
+	const hearts = meanings.flatMap((meaning, i) =>
+		meaning?.role === 'channel' && (meaning.kind === 'heartRate' || meaning.kind === 'rrInterval') ? [i] : []
+	);
 	const times = meanings.flatMap((meaning, i) => (meaning?.role === 'time' ? [i] : []));
 	if (!long && hearts.length === 0) return null;
 	if (long && times.length === 0) return null;
@@ -121,7 +132,13 @@ function scoreHeader(lines: string[], index: number, delimiter: Delimiter, names
 		index,
 		names,
 		meanings,
-		score: 10 * Math.min(known, 8) + (10 * fitting) / Math.max(1, filled) + (hearts.length ? 5 : 0) + (times.length ? 8 : 0) + blank + Math.min(fitting, 5)
+		score:
+			10 * Math.min(known, 8) +
+			(10 * fitting) / Math.max(1, filled) +
+			(hearts.length ? 5 : 0) +
+			(times.length ? 8 : 0) +
+			blank +
+			Math.min(fitting, 5)
 	};
 }
 
@@ -148,19 +165,39 @@ function fromHeader(lines: string[], header: Header): TableGuess {
 	const nameColumn = meanings.findIndex((meaning) => meaning?.role === 'name');
 	const valueColumn = meanings.findIndex((meaning) => meaning?.role === 'value');
 	const channelColumns = meanings.flatMap((meaning, column): ChannelColumn[] =>
-		meaning?.role === 'channel' ? [{ column, kind: meaning.kind, factor: meaning.factor, offset: meaning.offset, countsSteps: meaning.countsSteps }] : []
+		meaning?.role === 'channel'
+			? [
+					{
+						column,
+						kind: meaning.kind,
+						factor: meaning.factor,
+						offset: meaning.offset,
+						countsSteps: meaning.countsSteps
+					}
+				]
+			: []
 	);
 	const timeColumns = meanings.flatMap((meaning, column) => (meaning?.role === 'time' ? [column] : []));
 	const time = guessTime(rows, names, meanings, timeColumns, decimalComma, notes);
 	if (nameColumn >= 0 && valueColumn >= 0 && !channelColumns.some((entry) => entry.kind === 'heartRate')) {
 		const long = longNames(rows, nameColumn, valueColumn);
-		const mapping: TableMapping | null = time && Object.values(long.names).some((entry) => entry.kind === 'heartRate') ? { ...base, layout: 'long', time, channels: [], long } : null;
-		if (!mapping) notes.push({ code: 'no-heart-rate-column', message: `No row of the column '${names[nameColumn]}' names a heart rate.` });
+		const mapping: TableMapping | null =
+			time && Object.values(long.names).some((entry) => entry.kind === 'heartRate')
+				? { ...base, layout: 'long', time, channels: [], long }
+				: null;
+		if (!mapping)
+			notes.push({
+				code: 'no-heart-rate-column',
+				message: `No row of the column '${names[nameColumn]}' names a heart rate.`
+			});
 		return { mapping, notes, ...shown, otherHeartRates: [] };
 	}
 	const { channels, otherHeartRates } = oneColumnPerKind(rows, names, channelColumns, decimalComma);
 	if (!time && !channels.some((entry) => entry.kind === 'rrInterval')) {
-		notes.push({ code: 'no-time', message: `No column holds times. The columns are: ${names.slice(0, 20).join(', ')}.` });
+		notes.push({
+			code: 'no-time',
+			message: `No column holds times. The columns are: ${names.slice(0, 20).join(', ')}.`
+		});
 		return { mapping: null, notes, ...shown, otherHeartRates };
 	}
 	scaleIntervals(rows, channels, decimalComma);
@@ -168,7 +205,12 @@ function fromHeader(lines: string[], header: Header): TableGuess {
 }
 
 /** Where two columns hold the same kind, the one with more values stands; of heart rates the others are offered. */
-function oneColumnPerKind(rows: string[][], names: string[], columns: ChannelColumn[], decimalComma: boolean): { channels: ChannelColumn[]; otherHeartRates: { column: number; name: string }[] } {
+function oneColumnPerKind(
+	rows: string[][],
+	names: string[],
+	columns: ChannelColumn[],
+	decimalComma: boolean
+): { channels: ChannelColumn[]; otherHeartRates: { column: number; name: string }[] } {
 	const filled = (column: number) => rows.filter((row) => cellNumber(row[column] ?? '', decimalComma) > 0).length;
 	const channels: ChannelColumn[] = [];
 	const otherHeartRates: { column: number; name: string }[] = [];
@@ -181,7 +223,8 @@ function oneColumnPerKind(rows: string[][], names: string[], columns: ChannelCol
 		const better = filled(entry.column) > filled(channels[present].column);
 		const loser = better ? channels[present] : entry;
 		if (better) channels[present] = entry;
-		if (entry.kind === 'heartRate' && filled(loser.column) > 0) otherHeartRates.push({ column: loser.column, name: names[loser.column] });
+		if (entry.kind === 'heartRate' && filled(loser.column) > 0)
+			otherHeartRates.push({ column: loser.column, name: names[loser.column] });
 	}
 	return { channels, otherHeartRates };
 }
@@ -190,7 +233,10 @@ function oneColumnPerKind(rows: string[][], names: string[], columns: ChannelCol
 function scaleIntervals(rows: string[][], channels: ChannelColumn[], decimalComma: boolean): void {
 	for (const entry of channels) {
 		if (entry.kind !== 'rrInterval') continue;
-		const values = rows.map((row) => cellNumber((row[entry.column] ?? '').split(/[\s;|]/)[0], decimalComma)).filter((value) => value > 0).sort((a, b) => a - b);
+		const values = rows
+			.map((row) => cellNumber((row[entry.column] ?? '').split(/[\s;|]/)[0], decimalComma))
+			.filter((value) => value > 0)
+			.sort((a, b) => a - b);
 		if (values.length > 0) entry.factor = values[values.length >> 1] < 10 ? 1000 : 1;
 	}
 }
@@ -204,15 +250,39 @@ function longNames(rows: string[][], nameColumn: number, valueColumn: number): N
 		const meaning = columnMeaning(name);
 		if (meaning?.role !== 'channel' || taken.has(meaning.kind)) continue;
 		taken.add(meaning.kind);
-		names[name] = { kind: meaning.kind, factor: meaning.factor, offset: meaning.offset, countsSteps: meaning.countsSteps };
+		names[name] = {
+			kind: meaning.kind,
+			factor: meaning.factor,
+			offset: meaning.offset,
+			countsSteps: meaning.countsSteps
+		};
 	}
 	return { nameColumn, valueColumn, names };
 }
 
-const PREFERENCE: TimeForm[] = ['date-time', 'epoch-ns', 'epoch-us', 'epoch-ms', 'epoch-s', 'day-number', 'time-of-day', 'elapsed-clock', 'elapsed-ms', 'elapsed-s', 'elapsed-min'];
+const PREFERENCE: TimeForm[] = [
+	'date-time',
+	'epoch-ns',
+	'epoch-us',
+	'epoch-ms',
+	'epoch-s',
+	'day-number',
+	'time-of-day',
+	'elapsed-clock',
+	'elapsed-ms',
+	'elapsed-s',
+	'elapsed-min'
+];
 
 /** Of several columns of times the one that says most: moments before times of day before elapsed time. */
-function guessTime(rows: string[][], names: string[], meanings: (ColumnMeaning | undefined)[], columns: number[], decimalComma: boolean, notes: TableGuess['notes']): TableMapping['time'] {
+function guessTime(
+	rows: string[][],
+	names: string[],
+	meanings: (ColumnMeaning | undefined)[],
+	columns: number[],
+	decimalComma: boolean,
+	notes: TableGuess['notes']
+): TableMapping['time'] {
 	let best: TableMapping['time'] = null;
 	let bestRank = Infinity;
 	let dateColumn: number | null = null;
@@ -223,7 +293,11 @@ function guessTime(rows: string[][], names: string[], meanings: (ColumnMeaning |
 		const form = timeFormOf(cells, names[column] ?? '', meaning?.role === 'time' && meaning.elapsed, decimalComma);
 		if (!form) continue;
 		const { order, sure } = dateOrderOf(cells);
-		if (form === 'date-time' && !parseDateTime(cells[0], order)?.hasTime && cells.every((cell) => !parseDateTime(cell, order)?.hasTime)) {
+		if (
+			form === 'date-time' &&
+			!parseDateTime(cells[0], order)?.hasTime &&
+			cells.every((cell) => !parseDateTime(cell, order)?.hasTime)
+		) {
 			dateColumn ??= column;
 			if (!sure) notes.push(ambiguousDates(order));
 			continue;
@@ -245,7 +319,10 @@ function guessTime(rows: string[][], names: string[], meanings: (ColumnMeaning |
 }
 
 function ambiguousDates(order: DateOrder): { code: string; message: string } {
-	return { code: 'ambiguous-date', message: `The dates could be day-month or month-day. They are read with the ${order === 'mdy' ? 'month' : 'day'} first; check the date.` };
+	return {
+		code: 'ambiguous-date',
+		message: `The dates could be day-month or month-day. They are read with the ${order === 'mdy' ? 'month' : 'day'} first; check the date.`
+	};
 }
 
 function timeFormOf(cells: string[], name: string, elapsedName: boolean, decimalComma: boolean): TimeForm | null {
@@ -259,7 +336,8 @@ function timeFormOf(cells: string[], name: string, elapsedName: boolean, decimal
 	const { order } = dateOrderOf(some);
 	if (share((cell) => parseDateTime(cell, order) !== null) >= 0.7) return 'date-time';
 	const startsAtZero = parseElapsedClock(some[0]) < 60 && !/[ap]\.?m/i.test(some[0]);
-	if (share((cell) => !Number.isNaN(parseElapsedClock(cell))) >= 0.7 && (elapsedName || startsAtZero)) return 'elapsed-clock';
+	if (share((cell) => !Number.isNaN(parseElapsedClock(cell))) >= 0.7 && (elapsedName || startsAtZero))
+		return 'elapsed-clock';
 	if (share((cell) => !Number.isNaN(parseTimeOfDay(cell))) >= 0.7) return 'time-of-day';
 	if (share((cell) => !Number.isNaN(parseElapsedClock(cell))) >= 0.7) return 'elapsed-clock';
 	return null;
@@ -286,8 +364,14 @@ function fromContent(lines: string[]): TableGuess {
 		const firstRow = all.findIndex((cells) => cells.length === width && cellIsFigure(cells[column], decimalComma));
 		const named = all.slice(0, firstRow).findLast((cells) => cells.length === width && /\p{L}/u.test(cells[column]));
 		if (named)
-			return nothingFound(lines, `No column is named as a heart rate. The columns are: ${named.slice(0, 20).join(', ')}.`);
-		notes.push({ code: 'no-header', message: `The table has no column names. Column ${time.column + 1} is taken as the time and column ${column + 1} as the ${kind[column] === 'heartRate' ? 'heart rate' : 'RR interval'}; check them.` });
+			return nothingFound(
+				lines,
+				`No column is named as a heart rate. The columns are: ${named.slice(0, 20).join(', ')}.`
+			);
+		notes.push({
+			code: 'no-header',
+			message: `The table has no column names. Column ${time.column + 1} is taken as the time and column ${column + 1} as the ${kind[column] === 'heartRate' ? 'heart rate' : 'RR interval'}; check them.`
+		});
 		const channels: ChannelColumn[] = [{ column, kind: kind[column] ?? 'heartRate', factor: 1, offset: 0 }];
 		scaleIntervals(rows, channels, decimalComma);
 		const firstDataLine = all.findIndex((cells) => cells.length === width) + 1;
@@ -301,8 +385,14 @@ function fromContent(lines: string[]): TableGuess {
 	}
 	const single = lines.map((line) => line.trim()).filter((line) => line !== '');
 	if (valuesLike(single.slice(1), false) === 'heartRate')
-		return { ...nothingFound(lines, ''), notes: [{ code: 'no-time', message: 'The file holds one column of values like a heart rate and no times.' }] };
-	return nothingFound(lines, 'No line names a heart rate column, and no column holds values like a heart rate beside a time.');
+		return {
+			...nothingFound(lines, ''),
+			notes: [{ code: 'no-time', message: 'The file holds one column of values like a heart rate and no times.' }]
+		};
+	return nothingFound(
+		lines,
+		'No line names a heart rate column, and no column holds values like a heart rate beside a time.'
+	);
 }
 
 function nothingFound(lines: string[], message: string): TableGuess {
@@ -320,7 +410,11 @@ function cellIsFigure(cell: string, decimalComma: boolean): boolean {
 }
 
 function risingTime(cells: string[], decimalComma: boolean): boolean {
-	if (cells.filter((cell) => parseDateTime(cell) !== null || !Number.isNaN(parseTimeOfDay(cell))).length >= 0.9 * cells.length) return true;
+	if (
+		cells.filter((cell) => parseDateTime(cell) !== null || !Number.isNaN(parseTimeOfDay(cell))).length >=
+		0.9 * cells.length
+	)
+		return true;
 	const numbers = cells.map((cell) => cellNumber(cell, decimalComma));
 	let rising = 0;
 	for (let i = 1; i < numbers.length; i++) if (numbers[i] > numbers[i - 1]) rising++;
@@ -328,10 +422,14 @@ function risingTime(cells: string[], decimalComma: boolean): boolean {
 }
 
 function valuesLike(cells: string[], decimalComma: boolean): ChannelKind | null {
-	const numbers = cells.map((cell) => cellNumber(cell, decimalComma)).filter((value) => value > 0).sort((a, b) => a - b);
+	const numbers = cells
+		.map((cell) => cellNumber(cell, decimalComma))
+		.filter((value) => value > 0)
+		.sort((a, b) => a - b);
 	if (numbers.length < 0.5 * cells.length || numbers.length < 2) return null;
 	const median = numbers[numbers.length >> 1];
-	const inside = (low: number, high: number) => numbers.filter((value) => value >= low && value <= high).length >= 0.9 * numbers.length;
+	const inside = (low: number, high: number) =>
+		numbers.filter((value) => value >= low && value <= high).length >= 0.9 * numbers.length;
 	if (median >= 40 && median <= 220 && inside(25, 240)) return 'heartRate';
 	if (inside(240, 2500) || inside(0.24, 2.5)) return 'rrInterval';
 	return null;

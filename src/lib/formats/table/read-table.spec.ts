@@ -43,12 +43,30 @@ describe('shapes of tables', () => {
 		['epoch ms', 'unix_ms,pulse\n' + rows((i) => `${START_S + i}000,${80 + i}`)],
 		['epoch s in quotes', '"ts","heart_rate"\n' + rows((i) => `"${START_S + i}","${80 + i}"`)],
 		['blanks', 'time  hr\n' + rows((i) => `${iso(i)}    ${80 + i}`)],
-		['a zone of +02:00', 'time,hr\n' + rows((i) => `${new Date((START_S + i + 7200) * 1000).toISOString().slice(0, 19)}+02:00,${80 + i}`)],
-		['old line ends and a byte-order mark', '\uFEFFtime,hr\r' + rows((i) => `${iso(i)},${80 + i}`).replaceAll('\n', '\r')],
+		[
+			'a zone of +02:00',
+			'time,hr\n' + rows((i) => `${new Date((START_S + i + 7200) * 1000).toISOString().slice(0, 19)}+02:00,${80 + i}`)
+		],
+		[
+			'old line ends and a byte-order mark',
+			'\uFEFFtime,hr\r' + rows((i) => `${iso(i)},${80 + i}`).replaceAll('\n', '\r')
+		],
 		['a sentence and a blank line above', 'Exported on request\n\ntime,hr\n' + rows((i) => `${iso(i)},${80 + i}`)],
-		['one row a channel', 'timestamp,type,value\n' + rows((i) => `${iso(i)},heart_rate,${80 + i}\n${iso(i)},cadence,170`)],
-		['one channel after the other', 'timestamp,metric,value\n' + rows((i) => `${iso(i)},cadence,85`) + '\n' + rows((i) => `${iso(i)},Heart Rate,${80 + i}`)],
-		['lines and columns exchanged', `time,${rows(iso).replaceAll('\n', ',')}\nheart_rate,${rows((i) => String(80 + i)).replaceAll('\n', ',')}`]
+		[
+			'one row a channel',
+			'timestamp,type,value\n' + rows((i) => `${iso(i)},heart_rate,${80 + i}\n${iso(i)},cadence,170`)
+		],
+		[
+			'one channel after the other',
+			'timestamp,metric,value\n' +
+				rows((i) => `${iso(i)},cadence,85`) +
+				'\n' +
+				rows((i) => `${iso(i)},Heart Rate,${80 + i}`)
+		],
+		[
+			'lines and columns exchanged',
+			`time,${rows(iso).replaceAll('\n', ',')}\nheart_rate,${rows((i) => String(80 + i)).replaceAll('\n', ',')}`
+		]
 	])('%s', (_, content) => {
 		const recording = read(content);
 		expectTheRun(recording);
@@ -88,7 +106,10 @@ describe('shapes of tables', () => {
 	});
 
 	it('takes device, serial and start from comment lines', () => {
-		const recording = read('# device: Corvane S\n# serial: 771\n# firmware: 2.1\n# start: 2024-05-06T12:53:20Z\nelapsed_s,heart_rate_bpm\n' + rows((i) => `${i},${80 + i}`));
+		const recording = read(
+			'# device: Corvane S\n# serial: 771\n# firmware: 2.1\n# start: 2024-05-06T12:53:20Z\nelapsed_s,heart_rate_bpm\n' +
+				rows((i) => `${i},${80 + i}`)
+		);
 		expectTheRun(recording);
 		expect(recording.device).toEqual({ maker: null, product: 'Corvane S', serial: '771', firmware: '2.1' });
 	});
@@ -144,9 +165,12 @@ describe('times that need a word', () => {
 		expect(parseDateTime(text)).toEqual({ tS: START_S, hasZone, hasTime: true });
 	});
 
-	it.each(['2024-13-01', '2024-02-30 10:00', '99:99:99', 'hello', '1234567', '2024-05-06T25:99:00Z'])('%s is no date', (text) => {
-		expect(parseDateTime(text)).toBeNull();
-	});
+	it.each(['2024-13-01', '2024-02-30 10:00', '99:99:99', 'hello', '1234567', '2024-05-06T25:99:00Z'])(
+		'%s is no date',
+		(text) => {
+			expect(parseDateTime(text)).toBeNull();
+		}
+	);
 
 	it('tells seconds, milliseconds, microseconds, nanoseconds, and days of a spreadsheet by their size', () => {
 		expect(numericTimeForm([1.7e9, 1.7e9 + 1], 'time')).toBe('epoch-s');
@@ -171,7 +195,9 @@ describe('values and names', () => {
 	});
 
 	it('brings km/h, miles, feet and degrees Fahrenheit to the units that are kept', () => {
-		const recording = read('time,hr,speed [km/h],distance (mi),altitude (ft),temperature (F)\n' + rows((i) => `${iso(i)},80,36,1,1000,50`));
+		const recording = read(
+			'time,hr,speed [km/h],distance (mi),altitude (ft),temperature (F)\n' + rows((i) => `${iso(i)},80,36,1,1000,50`)
+		);
 		expect(first(recording, 'speed')).toBeCloseTo(10, 9);
 		expect(first(recording, 'distance')).toBeCloseTo(1609.344, 9);
 		expect(first(recording, 'altitude')).toBeCloseTo(304.8, 9);
@@ -186,12 +212,35 @@ describe('values and names', () => {
 	});
 
 	it('never takes a summary or a setting for the heart rate', () => {
-		for (const name of ['Average heart rate (bpm)', 'HR max', 'hr_zone', 'Heart rate limit', 'heart rate variability', 'HR %', 'Min HR']) expect(columnMeaning(name)).toBeUndefined();
-		for (const name of ['HR', 'hr_bpm', 'Heart Rate (bpm)', 'heartRate', 'HeartRateBpm', 'Puls', 'Herzfrequenz', 'Fréquence cardiaque', 'bpm']) expect(columnMeaning(name)).toMatchObject({ kind: 'heartRate' });
+		for (const name of [
+			'Average heart rate (bpm)',
+			'HR max',
+			'hr_zone',
+			'Heart rate limit',
+			'heart rate variability',
+			'HR %',
+			'Min HR'
+		])
+			expect(columnMeaning(name)).toBeUndefined();
+		for (const name of [
+			'HR',
+			'hr_bpm',
+			'Heart Rate (bpm)',
+			'heartRate',
+			'HeartRateBpm',
+			'Puls',
+			'Herzfrequenz',
+			'Fréquence cardiaque',
+			'bpm'
+		])
+			expect(columnMeaning(name)).toMatchObject({ kind: 'heartRate' });
 	});
 
 	it('refuses a table without a heart rate and names its columns', () => {
-		expect(refusalOf('time,steps\n' + rows((i) => `${iso(i)},${80 + i}`))).toMatchObject({ code: 'no-heart-rate', message: expect.stringContaining('time, steps') });
+		expect(refusalOf('time,steps\n' + rows((i) => `${iso(i)},${80 + i}`))).toMatchObject({
+			code: 'no-heart-rate',
+			message: expect.stringContaining('time, steps')
+		});
 	});
 
 	it('refuses a heart rate without any time and says what is missing', () => {
@@ -241,9 +290,18 @@ describe('writeCsv', () => {
 	it('is read back as written in every form it offers', () => {
 		fc.assert(
 			fc.property(
-				fc.array(fc.tuple(fc.integer({ min: 35, max: 215 }), fc.integer({ min: 0, max: 1400 })), { minLength: 25, maxLength: 80 }),
+				fc.array(fc.tuple(fc.integer({ min: 35, max: 215 }), fc.integer({ min: 0, max: 1400 })), {
+					minLength: 25,
+					maxLength: 80
+				}),
 				fc.constantFrom<',' | ';' | '\t'>(',', ';', '\t'),
-				fc.constantFrom<'iso' | 'iso-local' | 'epoch-s' | 'epoch-ms' | 'elapsed'>('iso', 'iso-local', 'epoch-s', 'epoch-ms', 'elapsed'),
+				fc.constantFrom<'iso' | 'iso-local' | 'epoch-s' | 'epoch-ms' | 'elapsed'>(
+					'iso',
+					'iso-local',
+					'epoch-s',
+					'epoch-ms',
+					'elapsed'
+				),
 				fc.boolean(),
 				(samples, delimiter, time, decimalComma) => {
 					const tS = Float64Array.from(samples, (_, i) => START_S + i);
@@ -259,7 +317,9 @@ describe('writeCsv', () => {
 					expect(back.device).toEqual(recording.device);
 					expect(back.activity).toBe('cycling');
 					for (const trace of recording.traces) {
-						expect([...(traceOf(back, trace.kind)?.value ?? [])]).toEqual([...trace.value].map((value) => Number(value.toFixed(3))));
+						expect([...(traceOf(back, trace.kind)?.value ?? [])]).toEqual(
+							[...trace.value].map((value) => Number(value.toFixed(3)))
+						);
 						expect([...(traceOf(back, trace.kind)?.tS ?? [])]).toEqual([...tS]);
 					}
 				}

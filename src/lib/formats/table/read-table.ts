@@ -56,7 +56,12 @@ function chosenHeartRate(guess: TableGuess, options: ReadOptions): TableMapping 
 	const mapping = guess.mapping as TableMapping;
 	const chosen = guess.otherHeartRates.find((other) => other.name === options.heartRateSource);
 	if (!chosen) return mapping;
-	return { ...mapping, channels: mapping.channels.map((entry) => (entry.kind === 'heartRate' ? { ...entry, column: chosen.column } : entry)) };
+	return {
+		...mapping,
+		channels: mapping.channels.map((entry) =>
+			entry.kind === 'heartRate' ? { ...entry, column: chosen.column } : entry
+		)
+	};
 }
 
 /**
@@ -70,7 +75,12 @@ function chosenHeartRate(guess: TableGuess, options: ReadOptions): TableMapping 
  */
 export function readTable(text: string, mapping: TableMapping, options: ReadOptions = {}, guess?: TableGuess): Reading {
 	if (mapping.layout === 'transposed')
-		return readTable(transpose(text, mapping.delimiter), { ...mapping, layout: 'wide', delimiter: '\t' }, options, guess);
+		return readTable(
+			transpose(text, mapping.delimiter),
+			{ ...mapping, layout: 'wide', delimiter: '\t' },
+			options,
+			guess
+		);
 	return new TableReader(text, mapping, options, guess).read();
 }
 
@@ -103,7 +113,16 @@ class TableReader {
 	) {
 		const { time, channels, long } = mapping;
 		this.kinds = channels;
-		this.width = 2 + Math.max(time?.column ?? 0, time?.dateColumn ?? 0, long?.nameColumn ?? 0, long?.valueColumn ?? 0, guess?.columnNames.length ?? 0, ...channels.map((entry) => entry.column));
+		this.width =
+			2 +
+			Math.max(
+				time?.column ?? 0,
+				time?.dateColumn ?? 0,
+				long?.nameColumn ?? 0,
+				long?.valueColumn ?? 0,
+				guess?.columnNames.length ?? 0,
+				...channels.map((entry) => entry.column)
+			);
 	}
 
 	read(): Reading {
@@ -151,8 +170,15 @@ class TableReader {
 		if (startS === undefined) {
 			this.warnings.push(
 				clockOfDay
-					? { code: 'no-date', message: 'The times have no date. They stand on 1 January 1970 until the date is given.' }
-					: { code: 'no-clock', message: 'The times count from the start of the recording and the file does not say when that was. They begin at 0; give the start time, or align by shape.' }
+					? {
+							code: 'no-date',
+							message: 'The times have no date. They stand on 1 January 1970 until the date is given.'
+						}
+					: {
+							code: 'no-clock',
+							message:
+								'The times count from the start of the recording and the file does not say when that was. They begin at 0; give the start time, or align by shape.'
+						}
 			);
 			return null;
 		}
@@ -216,7 +242,11 @@ class TableReader {
 			filled = true;
 			if (tS !== tS) continue;
 			if (row < 0) row = this.table.addRow(tS);
-			this.table.set(row, entry.kind, entry.factor === 1 && entry.offset === 0 ? value : value * entry.factor + entry.offset);
+			this.table.set(
+				row,
+				entry.kind,
+				entry.factor === 1 && entry.offset === 0 ? value : value * entry.factor + entry.offset
+			);
 		}
 		if (row >= 0) return;
 		if (filled) this.noTime(line);
@@ -264,11 +294,22 @@ class TableReader {
 						: `The times carry no time zone. They are read as ${this.options.utcOffsetS / 3600} h ahead of UTC, as given.`
 			});
 		if (this.withoutTime > 0)
-			warnings.push({ code: 'row-without-time', message: `${counted(this.withoutTime, 'row')} with values but no readable time, first in line ${this.withoutTimeLine}: left out.`, at: { line: this.withoutTimeLine } });
+			warnings.push({
+				code: 'row-without-time',
+				message: `${counted(this.withoutTime, 'row')} with values but no readable time, first in line ${this.withoutTimeLine}: left out.`,
+				at: { line: this.withoutTimeLine }
+			});
 		if (this.ragged > 0)
-			warnings.push({ code: 'ragged-rows', message: `${counted(this.ragged, 'row')} hold more cells than there are column names, first in line ${this.raggedLine}. If a comma is the decimal mark, values may stand in the wrong column: check them.`, at: { line: this.raggedLine } });
+			warnings.push({
+				code: 'ragged-rows',
+				message: `${counted(this.ragged, 'row')} hold more cells than there are column names, first in line ${this.raggedLine}. If a comma is the decimal mark, values may stand in the wrong column: check them.`,
+				at: { line: this.raggedLine }
+			});
 		if (this.midnights > 0)
-			warnings.push({ code: 'past-midnight', message: `The time of day starts again ${counted(this.midnights, 'time')}: the recording is taken to run past midnight into the next day.` });
+			warnings.push({
+				code: 'past-midnight',
+				message: `The time of day starts again ${counted(this.midnights, 'time')}: the recording is taken to run past midnight into the next day.`
+			});
 		const activity = activityOf(this.facts);
 		if (isOnFoot(activity) && activity !== null && !this.cadenceCountsSteps()) {
 			const warning = toSteps(this.table, [...new Array(this.table.n).keys()], activity);
@@ -286,7 +327,8 @@ class TableReader {
 			rowsHoldAllChannels: this.mapping.layout !== 'long',
 			intervals: this.intervals(),
 			heartRateSources: sources,
-			withoutDate: this.mapping.time?.form.startsWith('epoch') || this.mapping.time?.form === 'date-time' ? false : start === null,
+			withoutDate:
+				this.mapping.time?.form.startsWith('epoch') || this.mapping.time?.form === 'date-time' ? false : start === null,
 			warnings
 		};
 		return assemble(found, this.options);
@@ -315,11 +357,17 @@ class TableReader {
 		if (this.rrMs.length === 0) return undefined;
 		if (this.mapping.time && this.rrS.some((t) => t === t)) {
 			const keep = [...this.rrS.keys()].filter((i) => this.rrS[i] === this.rrS[i]);
-			return stampedIntervals(keep.map((i) => this.rrMs[i]), keep.map((i) => this.rrS[i]));
+			return stampedIntervals(
+				keep.map((i) => this.rrMs[i]),
+				keep.map((i) => this.rrS[i])
+			);
 		}
 		// No column of times: the intervals follow each other from the start.
 		let t = this.baseS;
-		return placeIntervals(this.rrMs, this.rrMs.map((rr) => (t += rr / 1000)));
+		return placeIntervals(
+			this.rrMs,
+			this.rrMs.map((rr) => (t += rr / 1000))
+		);
 	}
 
 	private heartRateSources(): HeartRateSource[] {
@@ -328,13 +376,22 @@ class TableReader {
 		const own = this.kinds.find((entry) => entry.kind === 'heartRate');
 		if (others.length === 0 || !own || !values || values.length === 0) return [];
 		const name = (column: number) => this.guess?.columnNames[column] ?? `column ${column + 1}`;
-		const used = { key: name(own.column), label: `column ${name(own.column)}`, n: values.length, min: values.reduce((a, b) => Math.min(a, b)), max: values.reduce((a, b) => Math.max(a, b)) };
+		const used = {
+			key: name(own.column),
+			label: `column ${name(own.column)}`,
+			n: values.length,
+			min: values.reduce((a, b) => Math.min(a, b)),
+			max: values.reduce((a, b) => Math.max(a, b))
+		};
 		const rest = others.filter((other) => other.column !== own.column);
 		this.warnings.push({
 			code: 'second-heart-rate-source',
 			message: `The table holds ${others.length + 1} heart rates. '${used.key}' is used; the others are ${others.map((other) => `'${other.name}'`).join(', ')}. Choose another at import if it belongs to the device under test.`
 		});
-		return [used, ...rest.map((other) => ({ key: other.name, label: `column ${other.name}`, n: 0, min: NaN, max: NaN }))];
+		return [
+			used,
+			...rest.map((other) => ({ key: other.name, label: `column ${other.name}`, n: 0, min: NaN, max: NaN }))
+		];
 	}
 }
 
@@ -374,9 +431,17 @@ class LongRows {
 		}
 		const warnings: ReadingWarning[] = [];
 		if (this.backward > 0)
-			warnings.push({ code: 'backward-step', message: `Within a channel the clock steps back ${counted(this.backward, 'time')}, first to ${timeText(this.backwardAt)}. The rows are put in order of time; no time is changed.`, at: { tS: this.backwardAt } });
+			warnings.push({
+				code: 'backward-step',
+				message: `Within a channel the clock steps back ${counted(this.backward, 'time')}, first to ${timeText(this.backwardAt)}. The rows are put in order of time; no time is changed.`,
+				at: { tS: this.backwardAt }
+			});
 		if (this.repeated > 0)
-			warnings.push({ code: 'duplicate-time', message: `${counted(this.repeated, 'row')} repeat a channel at a time that it already has, first at ${timeText(this.repeatedAt)}. The first value stays.`, at: { tS: this.repeatedAt } });
+			warnings.push({
+				code: 'duplicate-time',
+				message: `${counted(this.repeated, 'row')} repeat a channel at a time that it already has, first at ${timeText(this.repeatedAt)}. The first value stays.`,
+				at: { tS: this.repeatedAt }
+			});
 		return warnings;
 	}
 }

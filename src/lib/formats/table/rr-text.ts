@@ -57,7 +57,9 @@ function readFigures(text: string): RrList | null {
 		const plain = line.trim();
 		if (plain === '') continue;
 		// A comma between figures parts them only where blanks or semicolons do not; `0,812` on its own is a decimal comma.
-		const parts = /^[012],\d+$/.test(plain) ? [plain.replace(',', '.')] : plain.replace(/(\d),(\d)/g, /[;\s]/.test(plain) ? '$1.$2' : '$1 $2').split(/[\s;,]+/);
+		const parts = /^[012],\d+$/.test(plain)
+			? [plain.replace(',', '.')]
+			: plain.replace(/(\d),(\d)/g, /[;\s]/.test(plain) ? '$1.$2' : '$1 $2').split(/[\s;,]+/);
 		const figures = parts.filter((part) => part !== '').map(Number);
 		if (figures.length === 0 || figures.some((value) => Number.isNaN(value))) {
 			if (first.length === 0 && above.length < 100) above.push(line);
@@ -92,14 +94,25 @@ export function readRrText(text: string, options: ReadOptions = {}): Reading {
 	const list = readFigures(text);
 	const unit = list && unitOf(list.values);
 	if (!list || !unit)
-		return { ok: false, refusal: { code: 'no-heart-rate', message: 'The figures in this text are no intervals between beats (300 to 2000 ms).' }, warnings: [] };
+		return {
+			ok: false,
+			refusal: {
+				code: 'no-heart-rate',
+				message: 'The figures in this text are no intervals between beats (300 to 2000 ms).'
+			},
+			warnings: []
+		};
 	const facts = factsOf(list.above, ',');
 	const warnings: ReadingWarning[] = [];
 	const start = startOf(facts);
 	let startS = options.startS ?? NaN;
 	if (Number.isNaN(startS) && start?.hasTime) {
 		startS = start.tS - (start.hasZone ? 0 : (options.utcOffsetS ?? 0));
-		if (!start.hasZone) warnings.push({ code: 'no-time-zone', message: 'The start carries no time zone. It is read as UTC; if the device showed local time, give its offset.' });
+		if (!start.hasZone)
+			warnings.push({
+				code: 'no-time-zone',
+				message: 'The start carries no time zone. It is read as UTC; if the device showed local time, give its offset.'
+			});
 	}
 	const rrMs: number[] = [];
 	const stamps: number[] = [];
@@ -107,7 +120,11 @@ export function readRrText(text: string, options: ReadOptions = {}): Reading {
 	const absolute = list.times !== null && list.times[0] / timeScale > 1e8;
 	if (Number.isNaN(startS)) {
 		startS = 0;
-		if (!absolute) warnings.push({ code: 'no-clock', message: 'The list does not say when it begins. The beats count from 0; give the start time, or align by shape.' });
+		if (!absolute)
+			warnings.push({
+				code: 'no-clock',
+				message: 'The list does not say when it begins. The beats count from 0; give the start time, or align by shape.'
+			});
 	}
 	let t = startS;
 	for (let i = 0; i < list.values.length; i++) {

@@ -31,7 +31,10 @@ export interface ParsedDateTime {
 
 const CLOCK = String.raw`(\d{1,2}):(\d{2})(?::(\d{2})(?:[.,:](\d+))?)?\s*([ap]\.?m\.?)?`;
 const ZONE = String.raw`(z|utc|gmt|(?:utc|gmt)?\s*[+\-\u2212]\d{1,2}(?::?\d{2})?)?`;
-const YEAR_FIRST = new RegExp(String.raw`^(\d{4})([-/.])(\d{1,2})\2(\d{1,2})(?:[t\s,]+${CLOCK})?\s*${ZONE}(?:\s*\[.*\])?$`, 'i');
+const YEAR_FIRST = new RegExp(
+	String.raw`^(\d{4})([-/.])(\d{1,2})\2(\d{1,2})(?:[t\s,]+${CLOCK})?\s*${ZONE}(?:\s*\[.*\])?$`,
+	'i'
+);
 const YEAR_LAST = new RegExp(String.raw`^(\d{1,2})([-/.])(\d{1,2})\2(\d{4}|\d{2})(?:[t\s,]+${CLOCK})?\s*${ZONE}$`, 'i');
 const COMPACT = /^(\d{4})(\d{2})(\d{2})[t\s_-]?(\d{2})(\d{2})(\d{2})(?:[.,](\d+))?\s*(z|[+-]\d{2}:?\d{2})?$/i;
 const CLOCK_ONLY = new RegExp(`^${CLOCK}$`, 'i');
@@ -40,14 +43,23 @@ const CLOCK_INSIDE = new RegExp(CLOCK, 'i');
 
 function zoneOffsetS(zone: string | undefined): number | null {
 	if (!zone) return null;
-	const text = zone.toLowerCase().replace(/utc|gmt|\s/g, '').replace('\u2212', '-');
+	const text = zone
+		.toLowerCase()
+		.replace(/utc|gmt|\s/g, '')
+		.replace('\u2212', '-');
 	if (text === '' || text === 'z') return 0;
 	const match = /^([+-])(\d{1,2}):?(\d{2})?$/.exec(text);
 	if (!match) return 0;
 	return (match[1] === '-' ? -1 : 1) * (Number(match[2]) * 3600 + Number(match[3] ?? 0) * 60);
 }
 
-function secondsOfDay(h: string, m: string, s: string | undefined, fraction: string | undefined, half: string | undefined): number {
+function secondsOfDay(
+	h: string,
+	m: string,
+	s: string | undefined,
+	fraction: string | undefined,
+	half: string | undefined
+): number {
 	let hour = Number(h);
 	if (half) hour = (hour % 12) + (/^p/i.test(half) ? 12 : 0);
 	const minute = Number(m);
@@ -56,7 +68,14 @@ function secondsOfDay(h: string, m: string, s: string | undefined, fraction: str
 	return hour * 3600 + minute * 60 + second + (fraction ? Number(`0.${fraction}`) : 0);
 }
 
-function fromParts(year: number, month: number, day: number, dayS: number, zone: string | undefined, hasTime: boolean): ParsedDateTime | null {
+function fromParts(
+	year: number,
+	month: number,
+	day: number,
+	dayS: number,
+	zone: string | undefined,
+	hasTime: boolean
+): ParsedDateTime | null {
 	if (month < 1 || month > 12 || day < 1 || day > 31 || !(dayS < 90_000)) return null;
 	const midnight = Date.UTC(2000, month - 1, day);
 	const date = new Date(midnight);
@@ -89,7 +108,15 @@ export function parseDateTime(text: string, order: DateOrder = 'dmy'): ParsedDat
 		return fromParts(year, Number(month), Number(day), dayS, m[10], m[5] !== undefined);
 	}
 	m = COMPACT.exec(text);
-	if (m) return fromParts(Number(m[1]), Number(m[2]), Number(m[3]), secondsOfDay(m[4], m[5], m[6], m[7], undefined), m[8], true);
+	if (m)
+		return fromParts(
+			Number(m[1]),
+			Number(m[2]),
+			Number(m[3]),
+			secondsOfDay(m[4], m[5], m[6], m[7], undefined),
+			m[8],
+			true
+		);
 	return withMonthName(text);
 }
 
@@ -174,7 +201,11 @@ export function numericTimeForm(values: number[], name: string): TimeForm {
 	if (largest > 1e14) return 'epoch-us';
 	if (largest > 1e11) return 'epoch-ms';
 	if (largest > 1e8) return 'epoch-s';
-	const steps = values.slice(1).map((value, i) => value - values[i]).filter((step) => step > 0).sort((a, b) => a - b);
+	const steps = values
+		.slice(1)
+		.map((value, i) => value - values[i])
+		.filter((step) => step > 0)
+		.sort((a, b) => a - b);
 	const step = steps[steps.length >> 1] ?? 1;
 	if (values[0] > 20_000 && largest < 80_000 && step < 0.1 && /date|time|zeit|datum|^$/.test(name)) return 'day-number';
 	if (/\bms\b|_ms$|milli/.test(name)) return 'elapsed-ms';

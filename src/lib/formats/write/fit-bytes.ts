@@ -9,7 +9,16 @@ export const UINT16 = 0x84;
 export const UINT32 = 0x86;
 export const UINT32Z = 0x8c;
 export const BYTE = 0x0d;
-const SIZE: Record<number, number> = { [ENUM]: 1, [UINT8]: 1, [SINT8]: 1, [UINT16]: 2, [UINT32]: 4, [UINT32Z]: 4, [BYTE]: 1, [STRING]: 1 };
+const SIZE: Record<number, number> = {
+	[ENUM]: 1,
+	[UINT8]: 1,
+	[SINT8]: 1,
+	[UINT16]: 2,
+	[UINT32]: 4,
+	[UINT32Z]: 4,
+	[BYTE]: 1,
+	[STRING]: 1
+};
 
 /** One field of a message to define: number, base type, and for text or arrays the size in bytes. */
 export type FieldToWrite = [number: number, type: number, size?: number];

@@ -19,7 +19,10 @@ export interface WriteRow {
  *
  * @returns rows in order of time and the RR trace, if there is one
  */
-export function rowsToWrite(recording: RecordingToWrite): { rows: WriteRow[]; intervals: Pick<Trace, 'tS' | 'value'> | null } {
+export function rowsToWrite(recording: RecordingToWrite): {
+	rows: WriteRow[];
+	intervals: Pick<Trace, 'tS' | 'value'> | null;
+} {
 	const byTime = new Map<number, WriteRow>();
 	let intervals: Pick<Trace, 'tS' | 'value'> | null = null;
 	for (const trace of recording.traces) {

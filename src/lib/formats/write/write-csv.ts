@@ -60,7 +60,8 @@ export function writeCsv(recording: RecordingToWrite, options: WriteCsvOptions =
 		for (const [name, value] of facts) if (value !== null) lines.push(`# ${name}: ${value}`);
 	}
 	const timeName = time === 'elapsed' ? 'elapsed_s' : 'time';
-	const named = (kind: ChannelKind) => (kind === 'cadence' && isOnFoot(recording.activity) ? 'cadence_spm' : COLUMN[kind]);
+	const named = (kind: ChannelKind) =>
+		kind === 'cadence' && isOnFoot(recording.activity) ? 'cadence_spm' : COLUMN[kind];
 	lines.push([timeName, ...kinds.map(named)].join(delimiter));
 	const figure = (value: number) => {
 		const text = String(Number(value.toFixed(3)));

@@ -20,20 +20,39 @@ describe('writeFit', () => {
 	it('gives back heart rate and cadence on foot as written, whatever the byte order', () => {
 		fc.assert(
 			fc.property(
-				fc.array(fc.tuple(fc.integer({ min: 1, max: 254 }), fc.integer({ min: 140, max: 220 })), { minLength: 2, maxLength: 200 }),
+				fc.array(fc.tuple(fc.integer({ min: 1, max: 254 }), fc.integer({ min: 140, max: 220 })), {
+					minLength: 2,
+					maxLength: 200
+				}),
 				fc.boolean(),
 				(values, bigEndian) => {
 					const written: RecordingToWrite = {
 						device: DEVICE,
 						activity: 'running',
-						traces: [trace('heartRate', values.map((v) => v[0])), trace('cadence', values.map((v) => v[1]))]
+						traces: [
+							trace(
+								'heartRate',
+								values.map((v) => v[0])
+							),
+							trace(
+								'cadence',
+								values.map((v) => v[1])
+							)
+						]
 					};
 					const recording = recordingOf(readFile(writeFit(written, { bigEndian }), 'a.fit'));
 					expect([...(traceOf(recording, 'heartRate')?.value ?? [])]).toEqual(values.map((v) => v[0]));
 					expect([...(traceOf(recording, 'cadence')?.value ?? [])]).toEqual(values.map((v) => v[1]));
 					expect(recording.startS).toBe(START_S);
-					expect(recording.device).toEqual({ maker: 'maker 255', product: 'Halden ECG strap', serial: '40217', firmware: '4.12' });
-					expect(recording.warnings.map((w) => w.code).filter((code) => code !== 'implausible-heart-rate')).toEqual(['cadence-doubled']);
+					expect(recording.device).toEqual({
+						maker: 'maker 255',
+						product: 'Halden ECG strap',
+						serial: '40217',
+						firmware: '4.12'
+					});
+					expect(recording.warnings.map((w) => w.code).filter((code) => code !== 'implausible-heart-rate')).toEqual([
+						'cadence-doubled'
+					]);
 				}
 			),
 			{ numRuns: 40 }
@@ -48,7 +67,10 @@ describe('writeFit', () => {
 			device: DEVICE,
 			activity: 'cycling',
 			traces: [
-				trace('heartRate', Array.from({ length: Math.ceil(t - START_S) }, () => 80)),
+				trace(
+					'heartRate',
+					Array.from({ length: Math.ceil(t - START_S) }, () => 80)
+				),
 				{ kind: 'rrInterval', tS: Float64Array.from(beats), value: Float64Array.from(rr) }
 			]
 		};
@@ -62,11 +84,16 @@ describe('writeFit', () => {
 	});
 
 	it('refuses a serial number that the format cannot hold instead of dropping it', () => {
-		expect(() => writeFit({ device: { ...DEVICE, serial: 'A-17' }, activity: null, traces: [trace('heartRate', [80, 81])] })).toThrow(/whole numbers/);
+		expect(() =>
+			writeFit({ device: { ...DEVICE, serial: 'A-17' }, activity: null, traces: [trace('heartRate', [80, 81])] })
+		).toThrow(/whole numbers/);
 	});
 
 	it('leaves a file that no device ever closed readable, and says so', () => {
-		const bytes = writeFit({ device: DEVICE, activity: null, traces: [trace('heartRate', [80, 81, 82])] }, { finished: false });
+		const bytes = writeFit(
+			{ device: DEVICE, activity: null, traces: [trace('heartRate', [80, 81, 82])] },
+			{ finished: false }
+		);
 		const recording = recordingOf(readFile(bytes, 'a.fit'));
 		expect(traceOf(recording, 'heartRate')?.value.length).toBe(3);
 		expect(recording.warnings.map((w) => w.code)).toContain('unfinished');

@@ -49,7 +49,14 @@ export function writeFit(recording: RecordingToWrite, options: WriteFitOptions =
 	const product = options.productNumber ?? 1;
 	const sport = sportNumber(recording.activity);
 
-	out.define(0, 0, [[0, ENUM], [1, UINT16], [2, UINT16], [3, UINT32Z], [4, UINT32], [8, STRING, NAME_SIZE]]);
+	out.define(0, 0, [
+		[0, ENUM],
+		[1, UINT16],
+		[2, UINT16],
+		[3, UINT32Z],
+		[4, UINT32],
+		[8, STRING, NAME_SIZE]
+	]);
 	out.put(0, UINT8);
 	out.put(4, ENUM);
 	out.put(maker, UINT16);
@@ -58,7 +65,15 @@ export function writeFit(recording: RecordingToWrite, options: WriteFitOptions =
 	out.put(start, UINT32);
 	out.text(device.product ?? '', NAME_SIZE);
 
-	out.define(1, 23, [[253, UINT32], [3, UINT32Z], [2, UINT16], [4, UINT16], [5, UINT16], [0, UINT8], [27, STRING, NAME_SIZE]]);
+	out.define(1, 23, [
+		[253, UINT32],
+		[3, UINT32Z],
+		[2, UINT16],
+		[4, UINT16],
+		[5, UINT16],
+		[0, UINT8],
+		[27, STRING, NAME_SIZE]
+	]);
 	out.put(1, UINT8);
 	out.put(start, UINT32);
 	out.put(serial, UINT32Z);
@@ -71,17 +86,38 @@ export function writeFit(recording: RecordingToWrite, options: WriteFitOptions =
 	writeRecords(out, rows, intervals, isOnFoot(recording.activity));
 
 	const elapsedMs = (end - start) * 1000;
-	out.define(2, 19, [[253, UINT32], [2, UINT32], [7, UINT32], [8, UINT32], [25, ENUM]]);
+	out.define(2, 19, [
+		[253, UINT32],
+		[2, UINT32],
+		[7, UINT32],
+		[8, UINT32],
+		[25, ENUM]
+	]);
 	out.put(2, UINT8);
 	for (const value of [end, start, elapsedMs, elapsedMs]) out.put(value, UINT32);
 	out.put(sport, ENUM);
-	out.define(3, 18, [[253, UINT32], [2, UINT32], [7, UINT32], [8, UINT32], [5, ENUM], [25, UINT16], [26, UINT16]]);
+	out.define(3, 18, [
+		[253, UINT32],
+		[2, UINT32],
+		[7, UINT32],
+		[8, UINT32],
+		[5, ENUM],
+		[25, UINT16],
+		[26, UINT16]
+	]);
 	out.put(3, UINT8);
 	for (const value of [end, start, elapsedMs, elapsedMs]) out.put(value, UINT32);
 	out.put(sport, ENUM);
 	out.put(0, UINT16);
 	out.put(1, UINT16);
-	out.define(4, 34, [[253, UINT32], [0, UINT32], [1, UINT16], [2, ENUM], [3, ENUM], [4, ENUM]]);
+	out.define(4, 34, [
+		[253, UINT32],
+		[0, UINT32],
+		[1, UINT16],
+		[2, ENUM],
+		[3, ENUM],
+		[4, ENUM]
+	]);
 	out.put(4, UINT8);
 	out.put(end, UINT32);
 	out.put(elapsedMs, UINT32);
@@ -150,7 +186,10 @@ function writeRecords(
 		if (has.altitude) scaled(values.altitude, 5, 500, 0xffffffff, UINT32);
 		if (has.distance) scaled(values.distance, 100, 0, 0xffffffff, UINT32);
 		if (has.temperature)
-			out.put(values.temperature === undefined ? 0x7f : Math.max(-127, Math.min(126, Math.round(values.temperature))), SINT8);
+			out.put(
+				values.temperature === undefined ? 0x7f : Math.max(-127, Math.min(126, Math.round(values.temperature))),
+				SINT8
+			);
 	}
 	beatsUntil(Infinity);
 }

@@ -29,7 +29,8 @@ export function writeGpx(recording: RecordingToWrite): string {
 		let extension = '';
 		if (values.temperature !== undefined) extension += `<tpx:atemp>${xmlNumber(values.temperature, 1)}</tpx:atemp>`;
 		if (values.heartRate !== undefined) extension += `<tpx:hr>${Math.round(values.heartRate)}</tpx:hr>`;
-		if (values.cadence !== undefined) extension += `<tpx:cad>${Math.round(onFoot ? values.cadence / 2 : values.cadence)}</tpx:cad>`;
+		if (values.cadence !== undefined)
+			extension += `<tpx:cad>${Math.round(onFoot ? values.cadence / 2 : values.cadence)}</tpx:cad>`;
 		if (values.speed !== undefined) extension += `<tpx:speed>${xmlNumber(values.speed, 3)}</tpx:speed>`;
 		const power = values.power === undefined ? '' : `<power>${Math.round(values.power)}</power>`;
 		if (extension || power)

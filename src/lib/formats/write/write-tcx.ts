@@ -40,11 +40,13 @@ export function writeTcx(recording: RecordingToWrite): string {
 		let point = `<Trackpoint><Time>${when(tS)}</Time>`;
 		if (values.altitude !== undefined) point += `<AltitudeMeters>${xmlNumber(values.altitude, 2)}</AltitudeMeters>`;
 		if (values.distance !== undefined) point += `<DistanceMeters>${xmlNumber(values.distance, 2)}</DistanceMeters>`;
-		if (values.heartRate !== undefined) point += `<HeartRateBpm><Value>${Math.round(values.heartRate)}</Value></HeartRateBpm>`;
+		if (values.heartRate !== undefined)
+			point += `<HeartRateBpm><Value>${Math.round(values.heartRate)}</Value></HeartRateBpm>`;
 		if (values.cadence !== undefined && !onFoot) point += `<Cadence>${Math.round(values.cadence)}</Cadence>`;
 		let extension = '';
 		if (values.speed !== undefined) extension += `<x:Speed>${xmlNumber(values.speed, 3)}</x:Speed>`;
-		if (values.cadence !== undefined && onFoot) extension += `<x:RunCadence>${Math.round(values.cadence / 2)}</x:RunCadence>`;
+		if (values.cadence !== undefined && onFoot)
+			extension += `<x:RunCadence>${Math.round(values.cadence / 2)}</x:RunCadence>`;
 		if (values.power !== undefined) extension += `<x:Watts>${Math.round(values.power)}</x:Watts>`;
 		if (extension) point += `<Extensions><x:TPX>${extension}</x:TPX></Extensions>`;
 		out.push(point + '</Trackpoint>');

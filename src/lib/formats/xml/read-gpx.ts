@@ -53,15 +53,27 @@ export function readGpx(text: string, options: ReadOptions = {}): Reading {
 	if (report.refusal) return { ok: false, refusal: report.refusal, warnings: report.warnings };
 	const used = points.table.n > 0 || loose.table.n === 0 ? points : loose;
 	const warnings = [...report.warnings, ...used.warnings()];
-	if (used === loose) warnings.push({ code: 'points-not-in-track', message: 'The file has no track with times. Its way points and route points are read instead.' });
-	if (tracks > 1) warnings.push({ code: 'several-tracks', message: `The file holds ${tracks} tracks. They are read as one recording.` });
+	if (used === loose)
+		warnings.push({
+			code: 'points-not-in-track',
+			message: 'The file has no track with times. Its way points and route points are read instead.'
+		});
+	if (tracks > 1)
+		warnings.push({
+			code: 'several-tracks',
+			message: `The file holds ${tracks} tracks. They are read as one recording.`
+		});
 	const activity = types.length === 1 ? types[0] : types.length > 1 ? 'multisport' : null;
 	const { table } = used;
 	if (activity !== null && isOnFoot(activity)) {
 		const warning = toSteps(table, [...new Array(table.n).keys()], activity);
 		if (warning) warnings.push(warning);
 	} else if (activity === null && table.holds('cadence'))
-		warnings.push({ code: 'cadence-unit-unknown', message: 'The file does not name its activity. The cadence is kept as it is; if it was a run and the values lie near 85, they count one foot only.' });
+		warnings.push({
+			code: 'cadence-unit-unknown',
+			message:
+				'The file does not name its activity. The cadence is kept as it is; if it was a run and the values lie near 85, they count one foot only.'
+		});
 	return assemble(
 		{
 			format: 'gpx',

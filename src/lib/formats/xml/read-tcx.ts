@@ -52,7 +52,11 @@ export function readTcx(text: string, options: ReadOptions = {}): Reading {
 	});
 	if (report.refusal) return { ok: false, refusal: report.refusal, warnings: report.warnings };
 	const warnings = [...report.warnings, ...points.warnings()];
-	if (activities > 1) warnings.push({ code: 'several-activities', message: `The file holds ${activities} activities (${sports.join(', ')}). They are read as one recording.` });
+	if (activities > 1)
+		warnings.push({
+			code: 'several-activities',
+			message: `The file holds ${activities} activities (${sports.join(', ')}). They are read as one recording.`
+		});
 	const activity = sports.length === 1 ? sports[0] : sports.length > 1 ? 'multisport' : null;
 	const { table, strideRows } = points;
 	const cadence = table.column('cadence');

@@ -17,8 +17,10 @@ function read(text: string, name?: string): Recording {
 const codes = (recording: Recording) => recording.warnings.map((warning) => warning.code);
 const heartRates = (recording: Recording) => [...(traceOf(recording, 'heartRate')?.value ?? [])];
 
-const gpx = (points: string, head = '<gpx version="1.1" creator="Wrenna Loop 2">', type = '') => `<?xml version="1.0"?>${head}<trk>${type}<trkseg>${points}</trkseg></trk></gpx>`;
-const point = (i: number, extension: string, time = iso(i)) => `<trkpt lat="51.2" lon="7.1"><ele>100</ele><time>${time}</time><extensions>${extension}</extensions></trkpt>`;
+const gpx = (points: string, head = '<gpx version="1.1" creator="Wrenna Loop 2">', type = '') =>
+	`<?xml version="1.0"?>${head}<trk>${type}<trkseg>${points}</trkseg></trk></gpx>`;
+const point = (i: number, extension: string, time = iso(i)) =>
+	`<trkpt lat="51.2" lon="7.1"><ele>100</ele><time>${time}</time><extensions>${extension}</extensions></trkpt>`;
 const five = (extension: (i: number) => string) => Array.from({ length: 5 }, (_, i) => point(i, extension(i))).join('');
 const tcx = (points: string, sport = 'Biking', tail = '') =>
 	`<TrainingCenterDatabase><Activities><Activity Sport="${sport}"><Id>${iso(0)}</Id><Lap StartTime="${iso(0)}"><Track>${points}</Track></Lap>${tail}</Activity></Activities></TrainingCenterDatabase>`;
@@ -26,7 +28,10 @@ const trackpoint = (i: number, more: string) => `<Trackpoint><Time>${iso(i)}</Ti
 
 describe('GPX as exporters write it', () => {
 	it.each([
-		['the usual extension', (i: number) => `<gpxtpx:TrackPointExtension><gpxtpx:hr>${90 + i}</gpxtpx:hr></gpxtpx:TrackPointExtension>`],
+		[
+			'the usual extension',
+			(i: number) => `<gpxtpx:TrackPointExtension><gpxtpx:hr>${90 + i}</gpxtpx:hr></gpxtpx:TrackPointExtension>`
+		],
 		['a prefix that was never declared', (i: number) => `<ns7:TPE><ns7:hr>${90 + i}</ns7:hr></ns7:TPE>`],
 		['no prefix', (i: number) => `<heartrate>${90 + i}</heartrate>`],
 		['a value inside', (i: number) => `<HeartRateBpm><Value>${90 + i}</Value></HeartRateBpm>`],
@@ -79,7 +84,9 @@ describe('GPX as exporters write it', () => {
 	});
 
 	it('takes way points where there is no track, and says so', () => {
-		const recording = read(`<gpx>${[0, 1, 2].map((i) => `<wpt lat="1" lon="1"><time>${iso(i)}</time><extensions><hr>${90 + i}</hr></extensions></wpt>`).join('')}</gpx>`);
+		const recording = read(
+			`<gpx>${[0, 1, 2].map((i) => `<wpt lat="1" lon="1"><time>${iso(i)}</time><extensions><hr>${90 + i}</hr></extensions></wpt>`).join('')}</gpx>`
+		);
 		expect(heartRates(recording)).toEqual([90, 91, 92]);
 		expect(codes(recording)).toContain('points-not-in-track');
 	});
@@ -94,23 +101,63 @@ describe('GPX as exporters write it', () => {
 
 describe('TCX as exporters write it', () => {
 	it('reads heart rate, speed, power and the device with its firmware', () => {
-		const creator = '<Creator><Name>Ostrel Band</Name><UnitId>3917</UnitId><ProductID>9</ProductID><Version><VersionMajor>4</VersionMajor><VersionMinor>10</VersionMinor></Version></Creator>';
-		const recording = read(tcx([0, 1, 2].map((i) => trackpoint(i, `<HeartRateBpm><Value>${90 + i}</Value></HeartRateBpm><Cadence>80</Cadence><Extensions><ns3:TPX><ns3:Speed>5.5</ns3:Speed><ns3:Watts>210</ns3:Watts></ns3:TPX></Extensions>`)).join(''), 'Biking', creator));
+		const creator =
+			'<Creator><Name>Ostrel Band</Name><UnitId>3917</UnitId><ProductID>9</ProductID><Version><VersionMajor>4</VersionMajor><VersionMinor>10</VersionMinor></Version></Creator>';
+		const recording = read(
+			tcx(
+				[0, 1, 2]
+					.map((i) =>
+						trackpoint(
+							i,
+							`<HeartRateBpm><Value>${90 + i}</Value></HeartRateBpm><Cadence>80</Cadence><Extensions><ns3:TPX><ns3:Speed>5.5</ns3:Speed><ns3:Watts>210</ns3:Watts></ns3:TPX></Extensions>`
+						)
+					)
+					.join(''),
+				'Biking',
+				creator
+			)
+		);
 		expect(recording.device).toEqual({ maker: null, product: 'Ostrel Band', serial: '3917', firmware: '4.10' });
-		expect(recording.traces.map((trace) => [trace.kind, trace.value[0]])).toEqual([['heartRate', 90], ['cadence', 80], ['speed', 5.5], ['power', 210]]);
+		expect(recording.traces.map((trace) => [trace.kind, trace.value[0]])).toEqual([
+			['heartRate', 90],
+			['cadence', 80],
+			['speed', 5.5],
+			['power', 210]
+		]);
 		expect(codes(recording)).toEqual([]);
 	});
 
 	it('doubles the cadence that stands in the element for strides, and one in the plain element of a run', () => {
-		const strides = read(tcx([0, 1].map((i) => trackpoint(i, '<HeartRateBpm><Value>120</Value></HeartRateBpm><Extensions><TPX><RunCadence>84</RunCadence></TPX></Extensions>')).join(''), 'Other'));
+		const strides = read(
+			tcx(
+				[0, 1]
+					.map((i) =>
+						trackpoint(
+							i,
+							'<HeartRateBpm><Value>120</Value></HeartRateBpm><Extensions><TPX><RunCadence>84</RunCadence></TPX></Extensions>'
+						)
+					)
+					.join(''),
+				'Other'
+			)
+		);
 		expect(traceOf(strides, 'cadence')?.value[0]).toBe(168);
 		expect(codes(strides)).toEqual(['cadence-doubled']);
-		const plain = read(tcx([0, 1].map((i) => trackpoint(i, '<HeartRateBpm><Value>120</Value></HeartRateBpm><Cadence>84</Cadence>')).join(''), 'Running'));
+		const plain = read(
+			tcx(
+				[0, 1]
+					.map((i) => trackpoint(i, '<HeartRateBpm><Value>120</Value></HeartRateBpm><Cadence>84</Cadence>'))
+					.join(''),
+				'Running'
+			)
+		);
 		expect(traceOf(plain, 'cadence')?.value[0]).toBe(168);
 	});
 
 	it('reads activities that are listed newest first as one recording in order of time', () => {
-		const two = tcx([10, 11].map((i) => trackpoint(i, `<HeartRateBpm><Value>${90 + i}</Value></HeartRateBpm>`)).join('')).replace(
+		const two = tcx(
+			[10, 11].map((i) => trackpoint(i, `<HeartRateBpm><Value>${90 + i}</Value></HeartRateBpm>`)).join('')
+		).replace(
 			'</Activities>',
 			`<Activity Sport="Biking"><Lap><Track>${[0, 1].map((i) => trackpoint(i, `<HeartRateBpm><Value>${90 + i}</Value></HeartRateBpm>`)).join('')}</Track></Lap></Activity></Activities>`
 		);
@@ -139,25 +186,36 @@ describe('XML that means harm or is something else', () => {
 describe('writers', () => {
 	it('the same activity written as TCX and GPX gives the same heart rate and cadence', () => {
 		fc.assert(
-			fc.property(fc.array(fc.tuple(fc.integer({ min: 35, max: 215 }), fc.integer({ min: 70, max: 110 })), { minLength: 2, maxLength: 60 }), fc.constantFrom('running', 'cycling'), (samples, activity) => {
-				const tS = Float64Array.from(samples, (_, i) => START_S + i);
-				const recording: RecordingToWrite = {
-					device: { maker: null, product: 'Ostrel <Band> & co', serial: '3917', firmware: '4.10' },
-					activity,
-					traces: [
-						{ kind: 'heartRate', tS, value: Float64Array.from(samples, (sample) => sample[0]) },
-						{ kind: 'cadence', tS, value: Float64Array.from(samples, (sample) => (activity === 'running' ? 2 : 1) * sample[1]) }
-					]
-				};
-				for (const text of [writeTcx(recording), writeGpx(recording)]) {
-					const back = read(text);
-					expect(back.device.product).toBe('Ostrel <Band> & co');
-					for (const trace of recording.traces) {
-						expect([...(traceOf(back, trace.kind)?.value ?? [])]).toEqual([...trace.value]);
-						expect([...(traceOf(back, trace.kind)?.tS ?? [])]).toEqual([...tS]);
+			fc.property(
+				fc.array(fc.tuple(fc.integer({ min: 35, max: 215 }), fc.integer({ min: 70, max: 110 })), {
+					minLength: 2,
+					maxLength: 60
+				}),
+				fc.constantFrom('running', 'cycling'),
+				(samples, activity) => {
+					const tS = Float64Array.from(samples, (_, i) => START_S + i);
+					const recording: RecordingToWrite = {
+						device: { maker: null, product: 'Ostrel <Band> & co', serial: '3917', firmware: '4.10' },
+						activity,
+						traces: [
+							{ kind: 'heartRate', tS, value: Float64Array.from(samples, (sample) => sample[0]) },
+							{
+								kind: 'cadence',
+								tS,
+								value: Float64Array.from(samples, (sample) => (activity === 'running' ? 2 : 1) * sample[1])
+							}
+						]
+					};
+					for (const text of [writeTcx(recording), writeGpx(recording)]) {
+						const back = read(text);
+						expect(back.device.product).toBe('Ostrel <Band> & co');
+						for (const trace of recording.traces) {
+							expect([...(traceOf(back, trace.kind)?.value ?? [])]).toEqual([...trace.value]);
+							expect([...(traceOf(back, trace.kind)?.tS ?? [])]).toEqual([...tS]);
+						}
 					}
 				}
-			}),
+			),
 			{ numRuns: 30 }
 		);
 	});

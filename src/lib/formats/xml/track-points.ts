@@ -103,10 +103,26 @@ export class TrackPoints {
 						? `${counted(this.withoutZone, 'time')} carry no time zone. They are read as UTC; if the device showed local time, give its offset.`
 						: `${counted(this.withoutZone, 'time')} carry no time zone. They are read as ${this.options.utcOffsetS / 3600} h ahead of UTC, as given.`
 			});
-		if (this.ofDay > 0) warnings.push({ code: 'no-date', message: `${counted(this.ofDay, 'time')} have no date. They stand on ${this.options.startS === undefined ? '1 January 1970 until the date is given' : 'the day given at import'}.` });
-		if (this.withoutTime > 0) warnings.push({ code: 'no-time-stamp', message: `${counted(this.withoutTime, 'track point')} with a heart rate carry no readable time and are left out.` });
-		if (this.decimalCommas > 0) warnings.push({ code: 'decimal-comma', message: `${counted(this.decimalCommas, 'value')} are written with a decimal comma, which XML does not allow. They are read all the same.` });
-		if (this.differing > 0) warnings.push({ code: 'heart-rate-twice', message: `${counted(this.differing, 'track point')} hold two different heart rates. The first is used.` });
+		if (this.ofDay > 0)
+			warnings.push({
+				code: 'no-date',
+				message: `${counted(this.ofDay, 'time')} have no date. They stand on ${this.options.startS === undefined ? '1 January 1970 until the date is given' : 'the day given at import'}.`
+			});
+		if (this.withoutTime > 0)
+			warnings.push({
+				code: 'no-time-stamp',
+				message: `${counted(this.withoutTime, 'track point')} with a heart rate carry no readable time and are left out.`
+			});
+		if (this.decimalCommas > 0)
+			warnings.push({
+				code: 'decimal-comma',
+				message: `${counted(this.decimalCommas, 'value')} are written with a decimal comma, which XML does not allow. They are read all the same.`
+			});
+		if (this.differing > 0)
+			warnings.push({
+				code: 'heart-rate-twice',
+				message: `${counted(this.differing, 'track point')} hold two different heart rates. The first is used.`
+			});
 		return warnings;
 	}
 }

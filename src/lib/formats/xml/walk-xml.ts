@@ -26,6 +26,9 @@ export interface XmlReport {
 const CHUNK = 65_536;
 const DEEPEST = 64;
 const LONGEST_TEXT = 4096;
+const LONGEST_STRETCH = 1_000_000;
+/** A file with more faults than this is no XML that an exporter wrote; reading stops there. */
+const MOST_ERRORS = 10_000;
 /** An ampersand that begins none of XML's own entities; the parser would swallow all up to the next semicolon. */
 const BARE_AMPERSAND = /&(?!(?:#\d{1,7}|#x[\da-f]{1,6}|amp|lt|gt|quot|apos);)/gi;
 
@@ -45,10 +48,9 @@ export function walkXml(text: string, handler: XmlHandler): XmlReport {
 	let refusal: XmlReport['refusal'] = null;
 	let errors = 0;
 	let firstError: { line: number; message: string } | null = null;
-	const bare = text.search(BARE_AMPERSAND);
-	const clean = bare < 0 ? text : text.replace(BARE_AMPERSAND, () => (errors++, '&amp;'));
-	if (bare >= 0) firstError = { line: text.slice(0, bare).split('\n').length, message: 'a bare ampersand' };
 	let ended = false;
+	let gaveUp = false;
+	let lastClosing = 0;
 	let elements = 0;
 	let rootClosed = false;
 	const path: string[] = [];
@@ -66,12 +68,20 @@ export function walkXml(text: string, handler: XmlHandler): XmlReport {
 				code: 'xml-entities',
 				message: `The file declares XML entities (line ${parser.line}). They are not read, because they can be made to fill the memory or to fetch other files. Export the recording again without them.`
 			};
-		else warnings.push({ code: 'doctype-ignored', message: 'The document type named in the file is not looked at.', at: { line: parser.line } });
+		else
+			warnings.push({
+				code: 'doctype-ignored',
+				message: 'The document type named in the file is not looked at.',
+				at: { line: parser.line }
+			});
 	});
 	parser.on('opentag', (tag) => {
 		const name = localName(tag.name);
 		if (path.length >= DEEPEST) {
-			refusal = { code: 'xml-too-deep', message: `The elements of the file are nested more than ${DEEPEST} deep (line ${parser.line}). No recording is built like that.` };
+			refusal = {
+				code: 'xml-too-deep',
+				message: `The elements of the file are nested more than ${DEEPEST} deep (line ${parser.line}). No recording is built like that.`
+			};
 			return;
 		}
 		elements++;
@@ -94,9 +104,31 @@ export function walkXml(text: string, handler: XmlHandler): XmlReport {
 		own.pop();
 		if (path.length === 0 && !ended) rootClosed = true;
 	});
-	const start = clean.search(/</);
-	if (start < 0) return { warnings, refusal };
-	for (let at = start; at < clean.length && !refusal && !rootClosed; at += CHUNK) parser.write(clean.slice(at, at + CHUNK));
+	for (let at = Math.max(0, text.indexOf('<')); at < text.length && !refusal && !rootClosed;) {
+		let end = Math.min(text.length, at + CHUNK);
+		// An entity must not be parted between two pieces.
+		const ampersand = text.lastIndexOf('&', end - 1);
+		if (end < text.length && ampersand > end - 12 && ampersand > at) end = ampersand;
+		const piece = text.slice(at, end);
+		const bare = piece.search(BARE_AMPERSAND);
+		if (bare < 0) parser.write(piece);
+		else {
+			firstError ??= { line: parser.line + piece.slice(0, bare).split('\n').length - 1, message: 'a bare ampersand' };
+			parser.write(piece.replace(BARE_AMPERSAND, () => (errors++, '&amp;')));
+		}
+		const closing = text.lastIndexOf('>', end - 1);
+		if (closing >= at) lastClosing = closing;
+		else if (end - lastClosing > LONGEST_STRETCH)
+			refusal = {
+				code: 'xml-too-long',
+				message: `From line ${parser.line} on ${LONGEST_STRETCH} characters follow without the end of an element. No recording is built like that.`
+			};
+		if (errors > MOST_ERRORS) {
+			gaveUp = true;
+			break;
+		}
+		at = end;
+	}
 	if (refusal) return { warnings, refusal };
 	ended = true;
 	if (!rootClosed) {
@@ -114,7 +146,7 @@ export function walkXml(text: string, handler: XmlHandler): XmlReport {
 	if (errors > 0 && first)
 		warnings.push({
 			code: 'xml-errors',
-			message: `${errors} ${errors === 1 ? 'fault' : 'faults'} in the XML, first in line ${first.line} (${first.message}). What could be read is read.`,
+			message: `${errors} ${errors === 1 ? 'fault' : 'faults'} in the XML, first in line ${first.line} (${first.message}). ${gaveUp ? `After line ${parser.line} reading stopped.` : 'What could be read is read.'}`,
 			at: { line: first.line }
 		});
 	return { warnings, refusal };
