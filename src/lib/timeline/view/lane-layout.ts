@@ -1,5 +1,6 @@
 /** Tags on one lane: which are in view, where their words go, and which edge or tag stands under a pointer. */
-import { sideBlamed, type AnalysisPlan, type TagKind, treatmentOf } from '../../agreement';
+import { sideBlamed, treatmentOf, type AnalysisPlan } from '../../agreement';
+import type { TagKind } from '../../agreement/tag';
 import { onAxis, type Tag } from '../model';
 import type { BenchTrack, ClockPlace } from './bench-track';
 import { timeX, type TimeFrame } from './time-frame';
@@ -100,21 +101,24 @@ export type LaneHit = { what: 'start' | 'end' | 'body'; tag: LaneTag } | { what:
 /** What stands at a position of a lane: an edge within `reachPx` (the held tag's first), a tag, or nothing. */
 export function hitLane(tags: readonly LaneTag[], frame: TimeFrame, x: number, reachPx = 6): LaneHit {
 	const byHeld = [...tags].sort((a, b) => Number(b.held) - Number(a.held));
-	let best: { hit: LaneHit; far: number } | null = null;
-	for (const tag of byHeld) {
+	const ends = (tag: LaneTag) => {
 		const from = timeX(tag.fromS, frame);
-		const to = Math.max(from + NARROWEST_PX, timeX(tag.toS, frame));
+		return { from, to: Math.max(from + NARROWEST_PX, timeX(tag.toS, frame)) };
+	};
+	const edges = byHeld.flatMap((tag) => {
+		const { from, to } = ends(tag);
 		// A short tag keeps its middle third for being held as a whole.
-		const reach = Math.min(reachPx, Math.max(2, (to - from) / 3));
-		for (const [what, edge] of [['start', from], ['end', to]] as const) {
-			const inside = what === 'start' ? x - edge : edge - x;
-			const far = Math.abs(x - edge);
-			if (far > (inside >= 0 ? reach : reachPx)) continue;
-			if (!best || far < best.far - 1e-9) best = { hit: { what, tag }, far };
-		}
-		if (best && tag.held) return best.hit;
-	}
-	if (best) return best.hit;
-	const body = byHeld.find((tag) => x >= timeX(tag.fromS, frame) && x <= Math.max(timeX(tag.fromS, frame) + NARROWEST_PX, timeX(tag.toS, frame)));
+		const inside = Math.min(reachPx, Math.max(2, (to - from) / 3));
+		return [
+			{ what: 'start' as const, tag, farPx: Math.abs(x - from), reach: x >= from ? inside : reachPx },
+			{ what: 'end' as const, tag, farPx: Math.abs(x - to), reach: x <= to ? inside : reachPx }
+		].filter((e) => e.farPx <= e.reach);
+	});
+	const nearest = edges.reduce<(typeof edges)[number] | null>(
+		(best, e) => (!best || (e.tag.held && !best.tag.held) || (e.tag.held === best.tag.held && e.farPx < best.farPx) ? e : best),
+		null
+	);
+	if (nearest) return { what: nearest.what, tag: nearest.tag };
+	const body = byHeld.find((tag) => x >= ends(tag).from && x <= ends(tag).to);
 	return body ? { what: 'body', tag: body } : { what: 'empty' };
 }
