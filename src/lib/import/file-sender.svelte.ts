@@ -1,3 +1,5 @@
+import { tooLargeSentence } from './file-size';
+
 /** Sends chosen files to the server, three at a time, each by itself, and says how far each one is. */
 export interface SentFile {
 	key: number;
@@ -11,17 +13,17 @@ export interface SentFile {
 }
 
 const AT_ONCE = 3;
-const LARGEST_FILE_BYTES = 64 * 1024 * 1024;
 
 export class FileSender {
 	/** Files that are not with the server yet; one that has arrived leaves the list. */
 	files = $state<SentFile[]>([]);
 	readonly waiting = $derived(this.files.filter((f) => f.state !== 'failed').length);
-	private readonly contents = new Map<number, File>();
+	private readonly contents: Record<number, File | undefined> = {};
 	private nextKey = 1;
 
 	constructor(
 		private readonly address: string,
+		private readonly largestBytes: number,
 		/** Called when a file has arrived. */
 		private readonly arrived: () => void
 	) {}
@@ -29,22 +31,22 @@ export class FileSender {
 	add(chosen: Iterable<File>): void {
 		for (const file of chosen) {
 			const key = this.nextKey++;
-			const tooLarge = file.size > LARGEST_FILE_BYTES;
+			const tooLarge = file.size > this.largestBytes;
 			this.files.push({
 				key,
 				name: file.name,
 				sizeBytes: file.size,
 				share: 0,
 				state: tooLarge ? 'failed' : 'queued',
-				message: tooLarge ? `It has ${Math.ceil(file.size / 1048576)} MB; 64 MB is the most for one file. Export the session alone, or cut the recording in two.` : null
+				message: tooLarge ? tooLargeSentence(file.size, this.largestBytes) : null
 			});
-			if (!tooLarge) this.contents.set(key, file);
+			if (!tooLarge) this.contents[key] = file;
 		}
 		this.next();
 	}
 
 	canRetry(key: number): boolean {
-		return this.contents.has(key);
+		return this.contents[key] !== undefined;
 	}
 
 	retry(key: number): void {
@@ -55,7 +57,7 @@ export class FileSender {
 	}
 
 	dismiss(key: number): void {
-		this.contents.delete(key);
+		this.contents[key] = undefined;
 		this.files = this.files.filter((f) => f.key !== key);
 	}
 
@@ -69,7 +71,7 @@ export class FileSender {
 
 	// The one browser interface that tells how much of a request has left.
 	private send(entry: SentFile): void {
-		const content = this.contents.get(entry.key);
+		const content = this.contents[entry.key];
 		if (!content) return;
 		entry.state = 'sending';
 		const form = new FormData();
@@ -105,6 +107,6 @@ export function problemSentence(body: string, status: number): string {
 	} catch {
 		// Not a problem document: a proxy's page, or nothing.
 	}
-	if (status === 413) return 'The server takes no request of this size. Send the file alone; 64 MB is the most.';
+	if (status === 413) return 'The server takes no request of this size. Nothing was stored; export the session alone, or cut the recording in two.';
 	return `The server answered ${status} and no reason. Nothing was stored; try again in a moment.`;
 }

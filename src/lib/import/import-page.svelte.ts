@@ -1,5 +1,5 @@
 /** State of the import page: the board as the server has it, the lines of its recordings, and what a person decides. */
-import { createQuery, QueryClient } from '@tanstack/svelte-query';
+import { createQuery } from '@tanstack/svelte-query';
 import type { BoardFile, BoardSession, ImportBoard } from './board';
 import { FileSender, problemSentence } from './file-sender.svelte';
 import type { Outline } from './outline';
@@ -23,22 +23,19 @@ export class ImportPage {
 	private readonly base: string;
 	private lastBoard = '';
 	private lastChange = Date.now();
-	private readonly asked = new Set<string>();
+	/** Recordings whose line was asked for. */
+	private readonly asked: Record<string, boolean> = {};
 
 	/** Made while the page's component is made. */
-	constructor(slug: string, initial: ImportBoard) {
+	constructor(slug: string, initial: ImportBoard, largestBytes: number) {
 		this.base = `/api/v1/studies/${slug}/uploads`;
-		const client = new QueryClient();
-		this.query = createQuery(
-			() => ({
-				queryKey: ['import', slug],
-				queryFn: () => this.fetchBoard(),
-				initialData: initial,
-				refetchInterval: (query: { state: { data?: ImportBoard } }) => this.interval(query.state.data ?? initial)
-			}),
-			() => client
-		);
-		this.sender = new FileSender(this.base, () => void this.refresh());
+		this.query = createQuery(() => ({
+			queryKey: ['import', slug],
+			queryFn: () => this.fetchBoard(),
+			initialData: initial,
+			refetchInterval: (query: { state: { data?: ImportBoard } }) => this.interval(query.state.data ?? initial)
+		}));
+		this.sender = new FileSender(this.base, largestBytes, () => void this.refresh());
 		void this.fetchOutlines(initial);
 	}
 
@@ -130,13 +127,13 @@ export class ImportPage {
 	private async fetchOutlines(board: ImportBoard): Promise<void> {
 		if (typeof window === 'undefined') return;
 		const files = [...board.sessions.flatMap((s) => s.files), ...board.loose];
-		const missing = files.flatMap((f) => (f.recording && !this.asked.has(f.recording.recordingId) ? [f.recording.recordingId] : []));
+		const missing = files.flatMap((f) => (f.recording && !this.asked[f.recording.recordingId] ? [f.recording.recordingId] : []));
 		for (let i = 0; i < missing.length; i += 40) {
 			const ids = missing.slice(i, i + 40);
-			ids.forEach((id) => this.asked.add(id));
+			for (const id of ids) this.asked[id] = true;
 			const answer = await fetch(`${this.base}/outlines?recordings=${ids.join(',')}`).catch(() => null);
 			if (answer?.ok) this.outlines = { ...this.outlines, ...((await answer.json()) as Record<string, Outline>) };
-			else ids.forEach((id) => this.asked.delete(id));
+			else for (const id of ids) this.asked[id] = false;
 		}
 	}
 }

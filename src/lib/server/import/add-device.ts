@@ -1,7 +1,7 @@
 /** Adds a device to a study from the import page, when a file's device is not among the study's. */
 import { and, eq } from 'drizzle-orm';
 import { authorise, type Actor } from '../auth/actor';
-import type { Database } from '../db/client';
+import type { Queryable } from '../db/client';
 import { deviceModels, studyDevices } from '../db/schema';
 import { conflict, invalid } from '../errors';
 import { record } from '../record/audit';
@@ -17,7 +17,7 @@ export interface NewDevice {
 const MOST_WEARABLES = 6;
 
 /** @returns the model's id; the model is the team's of that name where there is one */
-export async function addDevice(db: Database, actor: Actor, studyId: string, device: NewDevice): Promise<string> {
+export async function addDevice(db: Queryable, actor: Actor, studyId: string, device: NewDevice): Promise<string> {
 	authorise(actor, 'study.edit');
 	const name = device.name.trim();
 	if (name === '' || name.length > 80) throw invalid('Give the device a name of up to 80 letters, as it stands on the device.');

@@ -1,7 +1,7 @@
 /** What a person decides on the import page: which device, which session, wearer and activity, out again. */
 import { and, eq, sql } from 'drizzle-orm';
 import { authorise, seesOwnSessionsOnly, type Actor } from '../auth/actor';
-import type { Database, Queryable } from '../db/client';
+import type { Queryable } from '../db/client';
 import { annotations, deviceModels, participants, rawFiles, recordings, sessions, studies, uploads } from '../db/schema';
 import { conflict, invalid, notFound } from '../errors';
 import type { JobSink } from '../jobs/queue';
@@ -22,7 +22,7 @@ type Upload = typeof uploads.$inferSelect;
  *
  * @returns the number of uploads that the answer settled
  */
-export async function answerDevice(db: Database, sink: JobSink, actor: Actor, uploadId: string, deviceModelId: string): Promise<number> {
+export async function answerDevice(db: Queryable, sink: JobSink, actor: Actor, uploadId: string, deviceModelId: string): Promise<number> {
 	return db.transaction(async (tx) => {
 		const { upload, recording } = await ownUpload(tx, actor, uploadId);
 		await requireStudyDevice(tx, upload, deviceModelId);
@@ -52,7 +52,7 @@ export async function answerDevice(db: Database, sink: JobSink, actor: Actor, up
 }
 
 /** Moves an upload's recording to a session, or, with null, to a new one of its own. Tags and offsets go along. */
-export async function placeInSession(db: Database, sink: JobSink, actor: Actor, uploadId: string, sessionId: string | null): Promise<void> {
+export async function placeInSession(db: Queryable, sink: JobSink, actor: Actor, uploadId: string, sessionId: string | null): Promise<void> {
 	await db.transaction(async (tx) => {
 		const { upload, recording } = await ownUpload(tx, actor, uploadId);
 		const { deviceModelId } = recording;
@@ -74,7 +74,7 @@ export async function placeInSession(db: Database, sink: JobSink, actor: Actor, 
 }
 
 /** Answers 'is its clock set to another zone' with no: its session stays its own and the question does not come back. */
-export async function keepApart(db: Database, actor: Actor, uploadId: string): Promise<void> {
+export async function keepApart(db: Queryable, actor: Actor, uploadId: string): Promise<void> {
 	await db.transaction(async (tx) => {
 		const { upload } = await ownUpload(tx, actor, uploadId);
 		if (upload.question?.code !== 'clock') throw invalid('This question is answered already.');
@@ -83,7 +83,7 @@ export async function keepApart(db: Database, actor: Actor, uploadId: string): P
 }
 
 /** Takes an upload out again: recording, traces, tags and bytes go, the record keeps that they were here. */
-export async function takeOut(db: Database, actor: Actor, uploadId: string): Promise<void> {
+export async function takeOut(db: Queryable, actor: Actor, uploadId: string): Promise<void> {
 	await db.transaction(async (tx) => {
 		const { upload, recording } = await reachableUpload(tx, actor, uploadId);
 		await lockSorting(tx, upload.studyId);
@@ -109,7 +109,7 @@ export interface SessionDescription {
 }
 
 /** Says who wore the devices and what was done. */
-export async function describeSession(db: Database, actor: Actor, studyId: string, sessionId: string, said: SessionDescription): Promise<void> {
+export async function describeSession(db: Queryable, actor: Actor, studyId: string, sessionId: string, said: SessionDescription): Promise<void> {
 	authorise(actor, 'session.sort');
 	await db.transaction(async (tx) => {
 		const [session] = await tx

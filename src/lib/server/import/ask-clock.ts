@@ -5,7 +5,7 @@
 import { and, eq, isNull } from 'drizzle-orm';
 import { zoneShiftOf } from '../../import/zone';
 import { clockTime, duration } from '../../text/figures';
-import type { Database, Queryable } from '../db/client';
+import type { Queryable } from '../db/client';
 import { deviceModels, recordings, sessions, uploads } from '../db/schema';
 import type { Engine } from '../jobs/engine';
 import { sessionsAround, type SessionAround } from './filing';
@@ -16,7 +16,7 @@ import { uploaderOf } from './uploader';
 /** Code of an upload whose session shall stay its own, whatever fits elsewhere. */
 export const KEPT_APART = 'kept-apart';
 
-export async function askClock(db: Database, engine: Engine, recordingId: string): Promise<void> {
+export async function askClock(db: Queryable, engine: Engine, recordingId: string): Promise<void> {
 	const lone = await loneWearable(db, recordingId);
 	if (lone === null) return;
 	const wearable = await heartRateOf(db, recordingId);
@@ -78,7 +78,7 @@ async function referenceOf(db: Queryable, sessionId: string): Promise<{ recordin
 	return reference ?? null;
 }
 
-async function ask(db: Database, lone: LoneWearable, session: SessionAround, found: { zoneShiftS: number; startsAfterReferenceS: number }): Promise<void> {
+async function ask(db: Queryable, lone: LoneWearable, session: SessionAround, found: { zoneShiftS: number; startsAfterReferenceS: number }): Promise<void> {
 	await db
 		.update(uploads)
 		.set({

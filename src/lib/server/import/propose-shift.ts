@@ -1,6 +1,6 @@
 /** The background job that searches a wearable's offset and writes it down as a proposal. */
 import { and, desc, eq } from 'drizzle-orm';
-import type { Database, Queryable } from '../db/client';
+import type { Queryable } from '../db/client';
 import { alignments, deviceModels, recordings } from '../db/schema';
 import type { Engine } from '../jobs/engine';
 import { settleSessionState } from '../session/state';
@@ -10,7 +10,7 @@ import { heartRateOf } from './heart-rate';
  * Searches and writes the next version of the wearable's alignment: the best-fit shift when it is reliable, else 0
  * with the reason. An offset that a person has set, or locked, is left alone.
  */
-export async function proposeShift(db: Database, engine: Engine, recordingId: string): Promise<void> {
+export async function proposeShift(db: Queryable, engine: Engine, recordingId: string): Promise<void> {
 	const pair = await pairOf(db, recordingId);
 	if (pair === null || (await isDecided(db, recordingId))) return;
 	const [reference, wearable] = await Promise.all([heartRateOf(db, pair.referenceId), heartRateOf(db, recordingId)]);

@@ -5,7 +5,7 @@
  */
 import { and, eq, inArray, sql } from 'drizzle-orm';
 import { traceOf, type Recording } from '../../formats/recording';
-import type { Database, Queryable } from '../db/client';
+import type { Queryable } from '../db/client';
 import { deviceModels, rawFiles, recordings, studies, traces, uploads } from '../db/schema';
 import { EngineStopped, type Engine, type ReadEntry } from '../jobs/engine';
 import { QUEUE_SCHEMA, QUEUES, type JobSink } from '../jobs/queue';
@@ -21,7 +21,7 @@ type Upload = typeof uploads.$inferSelect;
 const NO_HEART_RATE = 'no-heart-rate';
 
 /** Does the job. Done already, or taken back meanwhile: nothing happens. */
-export async function readUpload(db: Database, engine: Engine, sink: JobSink, uploadId: string): Promise<void> {
+export async function readUpload(db: Queryable, engine: Engine, sink: JobSink, uploadId: string): Promise<void> {
 	const started = await startReading(db, uploadId);
 	if (started === null) return;
 	const { fileName, bytes } = started;
@@ -42,7 +42,7 @@ export async function readUpload(db: Database, engine: Engine, sink: JobSink, up
 }
 
 /** Marks the upload as being read and gives its bytes; null when there is nothing left to do. */
-async function startReading(db: Database, uploadId: string): Promise<{ fileName: string; bytes: Uint8Array } | null> {
+async function startReading(db: Queryable, uploadId: string): Promise<{ fileName: string; bytes: Uint8Array } | null> {
 	const [upload] = await db
 		.update(uploads)
 		.set({ state: 'reading', progress: 0.5 })
@@ -54,7 +54,7 @@ async function startReading(db: Database, uploadId: string): Promise<{ fileName:
 }
 
 /** The upload's row locked, in one transaction, if it is still to be settled. */
-async function inOneGo(db: Database, uploadId: string, settleIt: (tx: Queryable, upload: Upload) => Promise<void>): Promise<void> {
+async function inOneGo(db: Queryable, uploadId: string, settleIt: (tx: Queryable, upload: Upload) => Promise<void>): Promise<void> {
 	await db.transaction(async (tx) => {
 		const [upload] = await tx.select().from(uploads).where(eq(uploads.id, uploadId)).for('update');
 		if (upload && (upload.state === 'reading' || upload.state === 'waiting')) await settleIt(tx, upload);
@@ -193,7 +193,7 @@ export async function dropUnusedBytes(tx: Queryable, rawFileId: string | null): 
 }
 
 /** After the last try: the upload is refused and says so. */
-export async function giveUpReading(db: Database, uploadId: string): Promise<void> {
+export async function giveUpReading(db: Queryable, uploadId: string): Promise<void> {
 	await inOneGo(db, uploadId, (tx, upload) =>
 		refuse(tx, upload, 'reader-failed', 'Reading it failed several times for a fault of ours, not yours. Nothing was stored. Upload it again later, and keep the file for whoever looks after this server.')
 	);

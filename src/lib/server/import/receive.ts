@@ -2,12 +2,14 @@
 import { createHash } from 'node:crypto';
 import { and, eq, ne } from 'drizzle-orm';
 import { authorise, seesOwnSessionsOnly, type Actor } from '../auth/actor';
-import type { Database, Queryable } from '../db/client';
+import type { Queryable } from '../db/client';
 import { participants, rawFiles, recordings, sessions, uploads } from '../db/schema';
 import { notAllowed } from '../errors';
+import { tooLargeSentence } from '../../import/file-size';
 import { QUEUES, type JobSink } from '../jobs/queue';
 import { record } from '../record/audit';
 
+/** Where the deployment says nothing else. */
 export const LARGEST_FILE_BYTES = 64 * 1024 * 1024;
 
 export interface UploadedFile {
@@ -33,12 +35,12 @@ export interface UploadStudy {
  * Takes in several files; each stands or falls by itself. Bytes that the study already holds are told as a
  * duplicate, bytes that are too many or none are refused with a sentence.
  */
-export async function receiveFiles(db: Database, sink: JobSink, actor: Actor, study: UploadStudy, files: readonly UploadedFile[]): Promise<Receipt[]> {
+export async function receiveFiles(db: Queryable, sink: JobSink, actor: Actor, study: UploadStudy, files: readonly UploadedFile[], largestBytes = LARGEST_FILE_BYTES): Promise<Receipt[]> {
 	authorise(actor, 'recording.upload');
 	await requireOwnCode(db, actor);
 	const receipts: Receipt[] = [];
 	for (const file of files) {
-		receipts.push(await db.transaction((tx) => receiveFile(tx, sink, actor, study, file)));
+		receipts.push(await db.transaction((tx) => receiveFile(tx, sink, actor, study, file, largestBytes)));
 	}
 	return receipts;
 }
@@ -55,9 +57,9 @@ async function requireOwnCode(db: Queryable, actor: Actor): Promise<void> {
 	}
 }
 
-async function receiveFile(tx: Queryable, sink: JobSink, actor: Actor, study: UploadStudy, file: UploadedFile): Promise<Receipt> {
+async function receiveFile(tx: Queryable, sink: JobSink, actor: Actor, study: UploadStudy, file: UploadedFile, largestBytes: number): Promise<Receipt> {
 	const fileName = cleanName(file.fileName);
-	const sizeRefusal = refusalBySize(file.bytes.byteLength);
+	const sizeRefusal = refusalBySize(file.bytes.byteLength, largestBytes);
 	if (sizeRefusal) return refuseAtTheDoor(tx, actor, study, fileName, sizeRefusal.code, sizeRefusal.message);
 
 	const kept = await keepBytes(tx, actor.teamId, file.bytes);
@@ -106,15 +108,10 @@ export async function duplicateSentence(tx: Queryable, actor: Pick<Actor, 'role'
 	return `The same file, byte for byte, is already here as ${earlier.fileName}, ${where}. One was kept; there is nothing to do.`;
 }
 
-function refusalBySize(sizeBytes: number): { code: string; message: string } | null {
+function refusalBySize(sizeBytes: number, largestBytes: number): { code: string; message: string } | null {
 	if (sizeBytes === 0) return { code: 'empty', message: 'The file is empty (0 bytes), so nothing was stored. Export it again from the device or its program.' };
-	if (sizeBytes <= LARGEST_FILE_BYTES) return null;
-	return { code: 'too-large', message: `${tooLargeSentence(sizeBytes)} Nothing was stored.` };
-}
-
-export function tooLargeSentence(sizeBytes: number): string {
-	const megabytes = Math.ceil(sizeBytes / (1024 * 1024));
-	return `The file has ${megabytes} MB; 64 MB is the most for one file. Export the session alone, or cut the recording in two.`;
+	if (sizeBytes <= largestBytes) return null;
+	return { code: 'too-large', message: `${tooLargeSentence(sizeBytes, largestBytes)} Nothing was stored.` };
 }
 
 async function refuseAtTheDoor(tx: Queryable, actor: Actor, study: UploadStudy, fileName: string, code: string, message: string): Promise<Receipt> {

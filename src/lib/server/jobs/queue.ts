@@ -57,7 +57,14 @@ export class JobList implements JobSink {
 }
 
 /** Makes the schema and the queues where they are missing. Safe to call from several processes at once. */
-export async function prepareQueues(boss: PgBoss): Promise<void> {
+export async function prepareQueues(databaseUrl: string): Promise<void> {
+	const boss = new PgBoss({ connectionString: databaseUrl, schema: QUEUE_SCHEMA, max: 1, supervise: false, schedule: false });
+	await boss.start();
+	await createQueues(boss);
+	await boss.stop({ graceful: false });
+}
+
+export async function createQueues(boss: PgBoss): Promise<void> {
 	for (const name of Object.values(QUEUES)) {
 		await boss.createQueue(name, { name, policy: 'standard', retryLimit: RETRY_LIMIT, expireInSeconds: 600 });
 	}

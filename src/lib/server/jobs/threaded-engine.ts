@@ -14,6 +14,8 @@ export type ThreadRequest =
 	| { id: number; task: 'read'; bytes: Uint8Array; fileName: string }
 	| { id: number; task: 'shift'; reference: Trace; wearable: Trace };
 export type ThreadAnswer = { id: number; ok: true; value: unknown } | { id: number; ok: false; message: string };
+/** Said once by every thread, when it has loaded the engine. */
+export const READY = 'ready';
 
 const ENTRY = join('src', 'lib', 'server', 'jobs', 'thread-entry.mjs');
 
@@ -31,11 +33,20 @@ interface Waiting {
 	reject(cause: Error): void;
 }
 
+interface EngineThread {
+	worker: Worker;
+	isReady: boolean;
+	/** What it works on; null while it is idle. */
+	current: (Waiting & { alarm: NodeJS.Timeout }) | null;
+}
+
+const LOADING_LIMIT_S = 30;
+
 /** A pool of engine threads, started as needed, kept until `close`. */
 export class ThreadedEngine implements Engine {
-	private readonly idle: Worker[] = [];
+	private readonly idle: EngineThread[] = [];
 	private readonly queue: Waiting[] = [];
-	private readonly all = new Set<Worker>();
+	private readonly all = new Set<EngineThread>();
 	private nextId = 1;
 	private closed = false;
 	private readonly entry = findEntry();
@@ -60,7 +71,10 @@ export class ThreadedEngine implements Engine {
 	async close(): Promise<void> {
 		this.closed = true;
 		for (const waiting of this.queue.splice(0)) waiting.reject(new Error('The engine is closed.'));
-		await Promise.all([...this.all].map((thread) => thread.terminate()));
+		const threads = [...this.all];
+		const ended = threads.map(({ worker }) => worker.terminate());
+		for (const thread of threads) this.lose(thread, new Error('The engine is closed.'));
+		await Promise.all(ended);
 	}
 
 	private ask(request: ThreadRequest): Promise<unknown> {
@@ -78,44 +92,62 @@ export class ThreadedEngine implements Engine {
 		if (thread !== null && waiting !== undefined) this.run(thread, waiting);
 	}
 
-	private start(): Worker {
-		const thread = new Worker(pathToFileURL(this.entry), { resourceLimits: { maxOldGenerationSizeMb: this.memoryMb }, execArgv: [] });
+	private start(): EngineThread {
+		const worker = new Worker(pathToFileURL(this.entry), { resourceLimits: { maxOldGenerationSizeMb: this.memoryMb }, execArgv: [] });
+		const thread: EngineThread = { worker, isReady: false, current: null };
 		this.all.add(thread);
-		thread.unref();
+		worker.on('message', (answer: ThreadAnswer | typeof READY) => {
+			if (answer === READY) this.begin(thread);
+			else this.finish(thread, answer);
+		});
+		worker.on('error', (cause) => {
+			const outOfMemory = 'code' in cause && cause.code === 'ERR_WORKER_OUT_OF_MEMORY';
+			this.lose(thread, outOfMemory ? new EngineStopped('needed-too-much-memory', 'It unfolds to more than the reader may hold in memory, and the reading was stopped.') : cause);
+		});
+		worker.on('exit', () => this.lose(thread, new Error('The engine thread ended in the middle of its work.')));
 		return thread;
 	}
 
-	private run(thread: Worker, { request, resolve, reject }: Waiting): void {
-		const finish = (settle: () => void, reusable: boolean) => {
-			clearTimeout(alarm);
-			thread.removeAllListeners();
-			if (reusable && !this.closed) {
-				thread.on('error', () => this.discard(thread));
-				thread.unref();
-				this.idle.push(thread);
-			} else this.discard(thread);
-			settle();
-			this.next();
-		};
-		const alarm = setTimeout(
-			() => finish(() => reject(new EngineStopped('took-too-long', `It was not read after ${this.limitS} s and the reading was stopped.`)), false),
-			this.limitS * 1000
-		);
-		thread.ref();
-		thread.on('message', (answer: ThreadAnswer) => finish(() => (answer.ok ? resolve(answer.value) : reject(new Error(answer.message))), true));
-		thread.on('error', (cause) => {
-			const outOfMemory = 'code' in cause && cause.code === 'ERR_WORKER_OUT_OF_MEMORY';
-			finish(() => reject(outOfMemory ? new EngineStopped('needed-too-much-memory', 'It unfolds to more than the reader may hold in memory, and the reading was stopped.') : cause), false);
-		});
-		thread.on('exit', () => finish(() => reject(new Error('The engine thread ended in the middle of its work.')), false));
-		thread.postMessage(request);
+	private run(thread: EngineThread, waiting: Waiting): void {
+		const tooLate = () => this.lose(thread, new Error(`The engine thread was not loaded after ${LOADING_LIMIT_S} s.`));
+		thread.current = { ...waiting, alarm: setTimeout(tooLate, LOADING_LIMIT_S * 1000) };
+		thread.worker.ref();
+		if (thread.isReady) this.begin(thread);
 	}
 
-	private discard(thread: Worker): void {
-		this.all.delete(thread);
+	/** Only now the time counts: loading the engine is our own, not the file's. */
+	private begin(thread: EngineThread): void {
+		thread.isReady = true;
+		const { current } = thread;
+		if (current === null) return;
+		clearTimeout(current.alarm);
+		const tooLong = () => this.lose(thread, new EngineStopped('took-too-long', `It was not read after ${this.limitS} s and the reading was stopped.`));
+		current.alarm = setTimeout(tooLong, this.limitS * 1000);
+		thread.worker.postMessage(current.request);
+	}
+
+	private finish(thread: EngineThread, answer: ThreadAnswer): void {
+		const { current } = thread;
+		if (current === null || current.request.id !== answer.id) return;
+		clearTimeout(current.alarm);
+		thread.current = null;
+		thread.worker.unref();
+		this.idle.push(thread);
+		if (answer.ok) current.resolve(answer.value);
+		else current.reject(new Error(answer.message));
+		this.next();
+	}
+
+	/** The thread is gone or has to go; what it worked on fails with the cause. */
+	private lose(thread: EngineThread, cause: Error): void {
+		if (!this.all.delete(thread)) return;
 		const at = this.idle.indexOf(thread);
 		if (at >= 0) this.idle.splice(at, 1);
-		void thread.terminate();
+		void thread.worker.terminate();
+		if (thread.current !== null) clearTimeout(thread.current.alarm);
+		thread.current?.reject(cause);
+		thread.current = null;
+		this.next();
 	}
 }
 

@@ -9,7 +9,7 @@ import { proposeShift } from '../import/propose-shift';
 import { giveUpReading, readUpload, unfinishedUploads } from '../import/read-upload';
 import type { Engine } from './engine';
 import { JobLeases } from './leases';
-import { databaseQueue, prepareQueues, QUEUE_SCHEMA, QUEUES, RETRY_LIMIT, WAKE_CHANNEL, type JobData, type QueueName } from './queue';
+import { createQueues, databaseQueue, QUEUE_SCHEMA, QUEUES, RETRY_LIMIT, WAKE_CHANNEL, type JobData, type QueueName } from './queue';
 import { ThreadedEngine } from './threaded-engine';
 
 export interface WorkerOptions {
@@ -36,7 +36,7 @@ export async function startWorker(options: WorkerOptions): Promise<RunningWorker
 	const boss = new PgBoss({ connectionString: options.databaseUrl, schema: QUEUE_SCHEMA, max: 4, schedule: false, maintenanceIntervalSeconds: 60, application_name: 'nonius-jobs' });
 	boss.on('error', (cause) => onError('queue', cause));
 	await boss.start();
-	await prepareQueues(boss);
+	await createQueues(boss);
 	const leases = new JobLeases(sql);
 
 	const handlers: { [N in QueueName]: (data: JobData[N], lastTry: boolean) => Promise<void> } = {

@@ -10,5 +10,5 @@ export const load: PageServerLoad = ({ locals, params }) =>
 		const actor = requireActor(locals);
 		authorise(actor, 'recording.upload');
 		const study = await studyBySlug(locals.db, actor, params.study);
-		return { slug: study.slug, title: study.title, board: await importBoard(locals.db, actor, study.id) };
+		return { slug: study.slug, title: study.title, largestBytes: locals.settings.maxUploadBytes, board: await importBoard(locals.db, actor, study.id) };
 	});

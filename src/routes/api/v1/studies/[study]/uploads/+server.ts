@@ -28,5 +28,5 @@ export const POST: RequestHandler = endpoint(async ({ locals, params, request })
 	const files = [...form.values()].filter((value) => value instanceof File);
 	if (files.length === 0) throw invalid('No file came with the upload. Choose one or more files and send them again.');
 	const read = await Promise.all(files.map(async (file) => ({ fileName: file.name, bytes: new Uint8Array(await file.arrayBuffer()) })));
-	return json({ receipts: await receiveFiles(locals.db, databaseQueue, actor, study, read) }, { status: 202 });
+	return json({ receipts: await receiveFiles(locals.db, databaseQueue, actor, study, read, locals.settings.maxUploadBytes) }, { status: 202 });
 });
