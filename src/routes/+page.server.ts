@@ -1,3 +1,4 @@
 import { redirect } from '@sveltejs/kit';
+import type { PageServerLoad } from './$types';
 
-export const load = ({ locals }) => redirect(303, locals.user ? '/studies' : '/signin');
+export const load: PageServerLoad = ({ locals }) => redirect(303, locals.user ? '/studies' : '/signin');

@@ -1,10 +1,11 @@
+import type { RequestHandler } from './$types';
 import { eq } from 'drizzle-orm';
 import { z } from 'zod';
 import { users } from '$lib/server/db/schema';
 import { endpoint } from '$lib/server/http/endpoint';
 
 /** The person's own theme; remembered in the browser too, for the pages before sign-in. */
-export const PUT = endpoint(async ({ locals, request, cookies }) => {
+export const PUT: RequestHandler = endpoint(async ({ locals, request, cookies }) => {
 	const { theme } = z.object({ theme: z.enum(['system', 'light', 'dark']) }).parse(await request.json());
 	if (locals.user) await locals.db.update(users).set({ theme }).where(eq(users.id, locals.user.id));
 	cookies.set('nonius-theme', theme, { path: '/', httpOnly: true, sameSite: 'lax', secure: locals.settings.origin.startsWith('https:'), maxAge: 31_536_000 });

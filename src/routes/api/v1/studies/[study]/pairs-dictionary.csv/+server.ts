@@ -1,3 +1,4 @@
+import type { RequestHandler } from './$types';
 import { requireActor } from '$lib/server/auth/require';
 import { authorise } from '$lib/server/auth/actor';
 import { endpoint } from '$lib/server/http/endpoint';
@@ -6,7 +7,7 @@ import { studyBasis } from '$lib/server/results/load-sessions';
 import { pairsDictionary } from '$lib/server/results/pairs-export';
 
 /** What every column, tag and rule of the exported pairs means. */
-export const GET = endpoint(async ({ locals, params }) => {
+export const GET: RequestHandler = endpoint(async ({ locals, params }) => {
 	const actor = requireActor(locals);
 	authorise(actor, 'pairs.export');
 	const study = await studyBySlug(locals.db, actor, params.study);

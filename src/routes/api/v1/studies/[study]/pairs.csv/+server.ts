@@ -1,3 +1,4 @@
+import type { RequestHandler } from './$types';
 import { requireActor } from '$lib/server/auth/require';
 import { authorise } from '$lib/server/auth/actor';
 import { endpoint } from '$lib/server/http/endpoint';
@@ -6,7 +7,7 @@ import { analysisFrom, pairsCsv } from '$lib/server/results/pairs-export';
 import { includeFrom, studyPairs } from '$lib/server/results/study-pairs';
 
 /** Aligned pairs as CSV. `include` = reviewed | aligned, `analysis` = all | primary | cleaned, `session` = one code. */
-export const GET = endpoint(async ({ locals, params, url }) => {
+export const GET: RequestHandler = endpoint(async ({ locals, params, url }) => {
 	const actor = requireActor(locals);
 	authorise(actor, 'pairs.export');
 	const study = await studyBySlug(locals.db, actor, params.study);

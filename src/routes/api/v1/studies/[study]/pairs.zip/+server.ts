@@ -1,3 +1,4 @@
+import type { RequestHandler } from './$types';
 import { strToU8, zipSync } from 'fflate';
 import { requireActor } from '$lib/server/auth/require';
 import { authorise } from '$lib/server/auth/actor';
@@ -7,7 +8,7 @@ import { analysisFrom, pairsCsv, pairsDictionary } from '$lib/server/results/pai
 import { includeFrom, studyPairs } from '$lib/server/results/study-pairs';
 
 /** Pairs and their dictionary in one file, so that neither travels without the other. */
-export const GET = endpoint(async ({ locals, params, url }) => {
+export const GET: RequestHandler = endpoint(async ({ locals, params, url }) => {
 	const actor = requireActor(locals);
 	authorise(actor, 'pairs.export');
 	const study = await studyBySlug(locals.db, actor, params.study);
