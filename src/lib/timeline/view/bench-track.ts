@@ -52,15 +52,20 @@ export const numberedName = (track: Pick<BenchTrack, 'number' | 'name'>): string
 export const numberedShortName = (track: Pick<BenchTrack, 'number' | 'shortName'>): string =>
 	track.number === 0 ? track.shortName : `${track.number} ${track.shortName}`;
 
-/** Lowest and highest value that the heart-rate plot must hold: the same for every part of the session, so that panning never rescales. */
+/** Share of a trace's readings at either end that may lie outside the frame: wild single values touch the edge instead of squeezing the rest. */
+const OUTSIDE_SHARE = 0.003;
+
+/** Values that the heart-rate plot must hold: the same for every part of the session, so that panning never rescales. */
 export function heartRateRange(tracks: readonly BenchTrack[]): { low: number; high: number } {
 	let low = Infinity;
 	let high = -Infinity;
-	for (const { heartRate } of tracks)
-		for (const v of heartRate.value) {
-			if (v < low) low = v;
-			if (v > high) high = v;
-		}
+	for (const { heartRate } of tracks) {
+		if (heartRate.value.length === 0) continue;
+		const sorted = heartRate.value.slice().sort();
+		const outside = Math.floor(OUTSIDE_SHARE * sorted.length);
+		low = Math.min(low, sorted[outside]);
+		high = Math.max(high, sorted[sorted.length - 1 - outside]);
+	}
 	if (low > high) return { low: 50, high: 190 };
 	const middle = (low + high) / 2;
 	const half = Math.max(20, (high - low) / 2);
