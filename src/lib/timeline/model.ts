@@ -62,6 +62,8 @@ export interface ReviewRound {
 	decision: 'approved' | 'returned' | null;
 	comment: string;
 	decidedAt: string | null;
+	/** When it was taken back before anybody decided. */
+	takenBackAt: string | null;
 }
 
 /** Everything the page needs of one session, except samples, which come apart as binary columns. */
@@ -84,12 +86,26 @@ export interface SessionDocument {
 	plan: AnalysisPlan;
 	reviews: ReviewRound[];
 	/** What the signed-in person may do here, already including 'never own work' and 'locked while in review'. */
-	can: { align: boolean; annotate: boolean; submit: boolean; review: boolean };
+	can: {
+		align: boolean;
+		annotate: boolean;
+		submit: boolean;
+		review: boolean;
+		/** Take it back from review before anybody has decided. */
+		takeBack: boolean;
+		/** Open it again after it was reviewed, with a reason. */
+		reopen: boolean;
+	};
 	me: { initials: string; role: Role };
 	/** Neighbours in the study's order, for going on without leaving the keys. */
 	previousCode: string | null;
 	nextCode: string | null;
 }
+
+/** What an offset says, apart from which version it is. */
+export type AlignmentContent = Omit<AlignmentState, 'version'>;
+/** What a tag says, apart from its identity and version. */
+export type TagContent = Omit<Tag, 'id' | 'version'>;
 
 /** A time of a recording's own clock on the session axis. Drift counts from the recording's first sample. */
 export function onAxis(tS: number, alignment: Pick<AlignmentState, 'offsetS' | 'driftPpm'>, firstS: number): number {
