@@ -10,7 +10,8 @@ const RUNS = 7;
 /** A ride of four hours with the channels that devices write once a second. */
 function fourHourRide(): RecordingToWrite {
 	const tS = Float64Array.from({ length: FOUR_HOURS_S }, (_, i) => 1_715_000_000 + i);
-	const wave = (low: number, high: number, periodS: number) => Float64Array.from(tS, (_, i) => low + (high - low) * (0.5 + 0.5 * Math.sin(i / periodS)));
+	const wave = (low: number, high: number, periodS: number) =>
+		Float64Array.from(tS, (_, i) => low + (high - low) * (0.5 + 0.5 * Math.sin(i / periodS)));
 	const rounded = (values: Float64Array) => values.map(Math.round);
 	return {
 		device: { maker: null, product: 'Wrenna Loop 2', serial: '5531', firmware: '2.04' },
@@ -46,11 +47,14 @@ export async function benchImport(): Promise<BenchRow[]> {
 		const reading = readFile(bytes, 'ride.fit');
 		const oursMs = performance.now() - begin;
 		begin = performance.now();
-		const parsed = await new FitParser({ force: true, mode: 'list' }).parseAsync(Buffer.from(bytes) as Buffer<ArrayBuffer>);
+		const parsed = await new FitParser({ force: true, mode: 'list' }).parseAsync(
+			Buffer.from(bytes) as Buffer<ArrayBuffer>
+		);
 		const rivalMs = performance.now() - begin;
 		const found = reading.ok ? reading.recording.traces.find((trace) => trace.kind === 'heartRate')?.tS.length : 0;
 		const theirs = parsed.records?.filter((record) => (record.heart_rate ?? 0) > 0).length;
-		if (found !== FOUR_HOURS_S || theirs !== FOUR_HOURS_S) throw new Error(`A reader lost values: ours found ${found}, the rival ${theirs} of ${FOUR_HOURS_S}.`);
+		if (found !== FOUR_HOURS_S || theirs !== FOUR_HOURS_S)
+			throw new Error(`A reader lost values: ours found ${found}, the rival ${theirs} of ${FOUR_HOURS_S}.`);
 		// The first turn warms both up and is not counted.
 		if (run === 0) continue;
 		ours.push(oursMs);

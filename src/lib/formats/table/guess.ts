@@ -9,6 +9,7 @@ import type { ChannelKind } from '../recording';
 import { cellNumber, LineWalker, splitCells, type Delimiter } from './cells';
 import { columnMeaning, nameWords, type ColumnMeaning } from './column-meaning';
 import type { ChannelColumn, TableGuess, TableMapping } from './mapping';
+import { findSplitColumns, joinRow, type ColumnShape } from './split-decimals';
 import {
 	dateOrderOf,
 	numericTimeForm,
@@ -157,15 +158,27 @@ function usesDecimalComma(lines: string[], delimiter: Delimiter): boolean {
 function fromHeader(lines: string[], header: Header): TableGuess {
 	const { delimiter, index, names, meanings } = header;
 	const following = lines.slice(index + 1);
-	const decimalComma = usesDecimalComma(following, delimiter);
-	const rows = following.map((line) => splitCells(line, delimiter)).filter((cells) => cells.length > 1);
+	const parted = following.map((line) => splitCells(line, delimiter)).filter((cells) => cells.length > 1);
+	const shapes = meanings.map(shapeOf);
+	const splitting =
+		delimiter === ',' && !following.some((line) => line.includes('"')) ? findSplitColumns(parted, shapes) : null;
+	const decimalComma = splitting !== null || usesDecimalComma(following, delimiter);
+	const rows = splitting
+		? parted.map((cells) => joinRow(cells, shapes, splitting.split)).filter((cells) => cells !== null)
+		: parted;
 	const notes: TableGuess['notes'] = [];
-	const base = { delimiter, decimalComma, headerLine: index + 1, firstDataLine: index + 2 };
+	const base = {
+		delimiter,
+		decimalComma,
+		headerLine: index + 1,
+		firstDataLine: index + 2,
+		...(splitting ? { splitDecimals: { columns: splitting.split, shapes } } : {})
+	};
 	const shown = { columnNames: names, firstRows: rows.slice(0, 12) };
 	const nameColumn = meanings.findIndex((meaning) => meaning?.role === 'name');
 	const valueColumn = meanings.findIndex((meaning) => meaning?.role === 'value');
 	const channelColumns = meanings.flatMap((meaning, column): ChannelColumn[] =>
-		meaning?.role === 'channel'
+		meaning?.role === 'channel' && (splitting === null || splitting.sure.has(column))
 			? [
 					{
 						column,
@@ -177,6 +190,7 @@ function fromHeader(lines: string[], header: Header): TableGuess {
 				]
 			: []
 	);
+	if (splitting) notes.push(splitDecimalsNote(names, splitting));
 	const timeColumns = meanings.flatMap((meaning, column) => (meaning?.role === 'time' ? [column] : []));
 	const time = guessTime(rows, names, meanings, timeColumns, decimalComma, notes);
 	if (nameColumn >= 0 && valueColumn >= 0 && !channelColumns.some((entry) => entry.kind === 'heartRate')) {
@@ -202,6 +216,28 @@ function fromHeader(lines: string[], header: Header): TableGuess {
 	}
 	scaleIntervals(rows, channels, decimalComma);
 	return { mapping: { ...base, layout: 'wide', time, channels, long: null }, notes, ...shown, otherHeartRates };
+}
+
+function shapeOf(meaning: ColumnMeaning | undefined): ColumnShape {
+	if (meaning?.role === 'time') return 'time';
+	if (meaning?.role !== 'channel') return 'other';
+	if (meaning.kind === 'heartRate') return 'heartRate';
+	return meaning.kind === 'rrInterval' ? 'other' : 'decimal';
+}
+
+function splitDecimalsNote(
+	names: string[],
+	{ split, sure }: { split: number[]; sure: Set<number> }
+): { code: string; message: string } {
+	const doubtful = names.filter((_, column) => !sure.has(column));
+	return {
+		code: 'decimal-comma',
+		message:
+			`A comma parts the cells and is the decimal mark too. The parts of ${split.map((column) => `'${names[column]}'`).join(', ')} are joined again` +
+			(doubtful.length
+				? `; ${doubtful.map((name) => `'${name}'`).join(', ')} cannot be told apart and are left out.`
+				: '.')
+	};
 }
 
 /** Where two columns hold the same kind, the one with more values stands; of heart rates the others are offered. */

@@ -1,6 +1,7 @@
 /** How a table is read: guessed from its content, shown to the importer, changed by her, remembered per source. */
 import type { ChannelKind } from '../recording';
 import type { Delimiter } from './cells';
+import type { ColumnShape } from './split-decimals';
 import type { DateOrder, TimeForm } from './time-form';
 
 export interface ChannelColumn {
@@ -19,6 +20,8 @@ export interface TableMapping {
 	layout: 'wide' | 'long' | 'transposed';
 	delimiter: Delimiter;
 	decimalComma: boolean;
+	/** Present where a comma parts the cells and is the decimal mark too: the columns that it splits, and the shape of each column. */
+	splitDecimals?: { columns: number[]; shapes: ColumnShape[] };
 	/** Line of the column names, from 1; null where there are none. */
 	headerLine: number | null;
 	/** First line that may hold values, from 1. */

@@ -204,6 +204,24 @@ describe('values and names', () => {
 		expect(first(recording, 'temperature')).toBeCloseTo(10, 9);
 	});
 
+	it('joins decimals that a comma parts from their whole numbers, before and behind the heart rate', () => {
+		const recording = read('time,speed,hr,distance\n' + rows((i) => `${iso(i)},3,${i % 10},${80 + i},${10 * i},25`));
+		expectTheRun(recording);
+		expect(traceOf(recording, 'speed')?.value[4]).toBe(3.4);
+		expect(traceOf(recording, 'distance')?.value[2]).toBe(20.25);
+		expect(codes(recording)).toEqual(['decimal-comma']);
+	});
+
+	it('reads such a table where whole numbers carry no decimals, and leaves out what cannot be told', () => {
+		const recording = read(
+			'time,hr,speed,altitude\n' + rows((i) => `${iso(i)},${80 + i},${i % 3 ? `3,${i}` : '3'},${100 + i},5`)
+		);
+		expectTheRun(recording);
+		expect(traceOf(recording, 'speed')?.value[0]).toBe(3.1);
+		expect(traceOf(recording, 'speed')?.value.length).toBe(20);
+		expect(codes(recording)).toEqual(['decimal-comma']);
+	});
+
 	it('asks which of two heart rates is meant, and reads the other on demand', () => {
 		const text = 'time,hr_strap,hr_watch\n' + rows((i) => `${iso(i)},${80 + i},${90 + i}`);
 		expectTheRun(read(text));

@@ -10,6 +10,8 @@
  *   (`ragged-rows`), because a decimal comma in a table parted by commas looks like that
  * - a program that saved `1.7186E9` for a time has lost the seconds: where hundreds of rows share a time for that reason,
  *   they are put one second apart from the first (`rounded-time-stamps`)
+ * - where a comma parts the cells and is the decimal mark too, the parts are joined again (`decimal-comma`); rows in
+ *   which that cannot be told are left out (`doubtful-rows`)
  * - several RR intervals may stand in one cell
  * - a long table may list its channels mixed or one after the other
  */
@@ -23,6 +25,7 @@ import { cellNumber, LineWalker, splitCells } from './cells';
 import { activityOf, deviceOf, factsOf, startOf, type Facts } from './facts';
 import { guessTableMapping, transpose } from './guess';
 import type { ChannelColumn, TableGuess, TableMapping } from './mapping';
+import { joinRow } from './split-decimals';
 import { parseDateTime, parseElapsedClock, parseTimeOfDay, secondsOfNumber } from './time-form';
 
 export const TABLE_READER_VERSION = 'table 1';
@@ -99,6 +102,8 @@ class TableReader {
 	private withoutTimeLine = 0;
 	private ragged = 0;
 	private raggedLine = 0;
+	private doubtful = 0;
+	private doubtfulLine = 0;
 	private midnights = 0;
 	private lastClockS = NaN;
 	/** True once a time was written in exponent form. */
@@ -139,7 +144,11 @@ class TableReader {
 		const byTime = this.mapping.layout === 'long' ? new LongRows(this.table) : null;
 		for (let line = walker.next(); line !== null; line = walker.next()) {
 			if (line === '' || line.trim() === '') continue;
-			const cells = splitCells(line, this.mapping.delimiter, this.width);
+			const cells = this.cellsOf(line);
+			if (cells === null) {
+				if (this.doubtful++ === 0) this.doubtfulLine = walker.line;
+				continue;
+			}
 			if (cells.length > width && cells.slice(width).some((cell) => cell !== '')) {
 				if (this.ragged++ === 0) this.raggedLine = walker.line;
 			}
@@ -149,6 +158,14 @@ class TableReader {
 		}
 		if (byTime) this.warnings.push(...byTime.finish());
 		return this.finish(start);
+	}
+
+	/** Null where the cells of a line cannot be told apart. */
+	private cellsOf(line: string): string[] | null {
+		const { splitDecimals, delimiter } = this.mapping;
+		if (!splitDecimals) return splitCells(line, delimiter, this.width);
+		const cells = splitCells(line, delimiter, this.width + splitDecimals.columns.length);
+		return cells.length < 2 ? cells : joinRow(cells, splitDecimals.shapes, splitDecimals.columns);
 	}
 
 	/** Where times that have no date of their own begin. */
@@ -304,6 +321,12 @@ class TableReader {
 				code: 'ragged-rows',
 				message: `${counted(this.ragged, 'row')} hold more cells than there are column names, first in line ${this.raggedLine}. If a comma is the decimal mark, values may stand in the wrong column: check them.`,
 				at: { line: this.raggedLine }
+			});
+		if (this.doubtful > 0)
+			warnings.push({
+				code: 'doubtful-rows',
+				message: `In ${counted(this.doubtful, 'row')} it cannot be told which commas part cells and which are decimal marks, first in line ${this.doubtfulLine}: left out.`,
+				at: { line: this.doubtfulLine }
 			});
 		if (this.midnights > 0)
 			warnings.push({
