@@ -1,5 +1,5 @@
 /** From a person to the teams he or she belongs to, and the one that is open. */
-import { asc, eq } from 'drizzle-orm';
+import { and, asc, eq, isNull } from 'drizzle-orm';
 import type { Role } from '../../roles';
 import type { Queryable } from '../db/client';
 import { members, teams } from '../db/schema';
@@ -36,7 +36,7 @@ export async function membershipsOf(db: Queryable, userId: string): Promise<Memb
 		})
 		.from(members)
 		.innerJoin(teams, eq(teams.id, members.teamId))
-		.where(eq(members.userId, userId))
+		.where(and(eq(members.userId, userId), isNull(members.leftAt)))
 		.orderBy(asc(teams.name));
 }
 

@@ -7,8 +7,10 @@ export function domainErrorOf(thrown: unknown): DomainError | null {
 	if (thrown instanceof DomainError) return thrown;
 	if (thrown instanceof ZodError) {
 		const first = thrown.issues[0];
-		const where = first.path.length > 0 ? `${first.path.join('.')}: ` : '';
-		return invalid(`The request is not as it should be. ${where}${first.message}.`, { issues: thrown.issues.map((i) => ({ path: i.path.join('.'), message: i.message })) });
+		// A schema's own sentence stands alone; the library's needs its place.
+		const own = /[.!?]$/.test(first.message);
+		const sentence = own ? first.message : `The request is not as it should be. ${first.path.length > 0 ? `${first.path.join('.')}: ` : ''}${first.message}.`;
+		return invalid(sentence, { issues: thrown.issues.map((i) => ({ path: i.path.join('.'), message: i.message })) });
 	}
 	return null;
 }

@@ -30,6 +30,8 @@ export const members = pgTable(
 		role: roleEnum('role').notNull(),
 		/** Two or three letters by which colleagues know the person. */
 		initials: text('initials').notNull(),
+		/** Set when the person left: what he or she wrote stays, the way in is closed. */
+		leftAt: timestamp('left_at', { withTimezone: true }),
 		createdAt: createdAt()
 	},
 	(t) => [
