@@ -80,3 +80,14 @@ export function meanInterval(estimate: MeanEstimate | NotDeterminable, confidenc
 	const reach = studentQuantile(1 - (1 - confidence) / 2, estimate.df) * estimate.standardError;
 	return [estimate.mean - reach, estimate.mean + reach];
 }
+
+/**
+ * Two-sided interval of a mean that cannot be negative, symmetric on the log scale: few sessions of errors are skewed,
+ * and a plain interval would end too low.
+ */
+export function positiveInterval(estimate: MeanEstimate | NotDeterminable, confidence = 0.95): Interval {
+	const plain = meanInterval(estimate, confidence);
+	if ('notDeterminable' in estimate || 'notDeterminable' in plain || !(estimate.mean > 0)) return plain;
+	const reach = (plain[1] - estimate.mean) / estimate.mean;
+	return [estimate.mean * Math.exp(-reach), estimate.mean * Math.exp(reach)];
+}

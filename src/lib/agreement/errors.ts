@@ -22,6 +22,11 @@ export function meanAbsolutePercentageError(s: PairMoments): Figure {
 	return (100 * s.relative) / s.n;
 }
 
+/** Mean squared difference, bpm². */
+export function meanSquare(s: PairMoments): Figure {
+	return s.n > 0 ? s.squaresDifference / s.n + s.meanDifference ** 2 : notDeterminable(NO_PAIRS);
+}
+
 /** Root of the mean squared difference, bpm: large errors weigh more. */
 export function rootMeanSquareError(s: PairMoments): Figure {
 	return s.n > 0 ? Math.sqrt(s.squaresDifference / s.n + s.meanDifference ** 2) : notDeterminable(NO_PAIRS);

@@ -4,12 +4,20 @@
  * Sessions are summed once (`sumSession`); everything else is made from those sums, so a study keeps the sums and
  * recomputes one session when one tag changes.
  */
-import { clusterMean, meanInterval, ONE_CLUSTER, type ClusterMean, type MeanEstimate } from './cluster-mean';
+import {
+	clusterMean,
+	meanInterval,
+	positiveInterval,
+	ONE_CLUSTER,
+	type ClusterMean,
+	type MeanEstimate
+} from './cluster-mean';
 import { concordance, concordanceInterval } from './concordance';
 import { pearsonR, repeatedMeasuresR } from './correlation';
 import { isDetermined, notDeterminable, type Figure, type Interval, type NotDeterminable } from './determinable';
 import { equivalence, type Equivalence } from './equivalence';
 import { binnedErrorQuantile, exactErrorQuantiles, type PairColumns } from './error-quantiles';
+import { meanAbsoluteInterval, meanSquareInterval } from './error-intervals';
 import { bias, meanAbsoluteError, meanAbsolutePercentageError, rootMeanSquareError, shareOf } from './errors';
 import { intraclassOfPairs } from './intraclass';
 import { jackknifeInterval } from './jackknife';
@@ -134,6 +142,8 @@ export function figuresOfSessions(
 	const coverage = totalCoverage(all);
 	const icc = intraclassOfPairs(whole);
 	const effect = designEffect(whole.n, spread.between, spread.within, spread.n0);
+	const evidence = { sessions: bySession, parts: spread, clusters, bias: biasEstimate };
+	const squareCi = meanSquareInterval(evidence);
 	const overClusters = (value: (m: PairMoments) => number) => meanInterval(meanOverClusters(clusters, value));
 	const mape = meanAbsolutePercentageError(whole);
 	return {
@@ -154,17 +164,17 @@ export function figuresOfSessions(
 		varWithin: spread.within,
 		betweenSetToZero: spread.betweenSetToZero,
 		mae: meanAbsoluteError(whole),
-		maeCi95: overClusters((m) => m.absolute / m.n),
+		maeCi95: meanAbsoluteInterval(evidence),
 		mape,
-		mapeCi95: isDetermined(mape) ? overClusters((m) => (100 * m.relative) / m.n) : mape,
+		mapeCi95: isDetermined(mape) ? positiveInterval(meanOverClusters(clusters, (m) => (100 * m.relative) / m.n)) : mape,
 		rmse: rootMeanSquareError(whole),
-		rmseCi95: rmseInterval(whole, clusters),
+		rmseCi95: isDetermined(squareCi) ? [Math.sqrt(squareCi[0]), Math.sqrt(squareCi[1])] : squareCi,
 		medianAbs,
 		p95Abs,
 		pearsonR: pearsonR(whole),
 		repeatedMeasuresR: repeatedMeasuresR(bySession),
 		ccc: concordance(whole),
-		cccCi95: concordanceInterval(whole, clusters),
+		cccCi95: concordanceInterval(whole, clusters, squareCi),
 		icc: { '2,1': icc['2,1'], '3,1': icc['3,1'] },
 		deming: deming(whole),
 		proportionalBias: proportionalBias(whole),
@@ -203,11 +213,6 @@ export function meanOverClusters(
 /** A share's interval, kept within 0 and 1. */
 function shareInterval(interval: Interval): Interval {
 	return isDetermined(interval) ? [Math.max(0, interval[0]), Math.min(1, interval[1])] : interval;
-}
-
-/** Root of the interval of the mean squared difference, by clusters on the log scale, since it cannot be negative. */
-function rmseInterval(whole: PairMoments, clusters: readonly PairMoments[]): Interval {
-	return jackknifeInterval(whole, clusters, rootMeanSquareError, { forward: Math.log, back: Math.exp });
 }
 
 /**

@@ -85,19 +85,10 @@ export function limitIntervals(
 			method: 'exact'
 		};
 	}
-	if (!isDetermined(parts.meanSquareBetween) || !isDetermined(parts.meanSquareWithin) || !isDetermined(parts.n0))
-		return none(notDeterminable('The variance parts are not determinable.'));
 	const tail = (1 - confidence) / 2;
-	const fromBetween = parts.meanSquareBetween / parts.n0;
-	const fromWithin = (1 - 1 / parts.n0) * parts.meanSquareWithin;
-	const within = worthOfWithin(sessions, parts.meanSquareWithin, parts.dfWithin);
-	const side = (p: number) =>
-		Math.hypot(
-			fromBetween * (1 - parts.dfBetween / chiSquaredQuantile(p, parts.dfBetween)),
-			fromWithin * (1 - within / chiSquaredQuantile(p, within))
-		);
-	const sdLow = Math.sqrt(Math.max(0, parts.total - side(1 - tail)));
-	const sdHigh = Math.sqrt(parts.total + side(tail));
+	const spread = totalVarianceInterval(sessions, parts, confidence);
+	if (!isDetermined(spread)) return none(spread);
+	const [sdLow, sdHigh] = [Math.sqrt(spread[0]), Math.sqrt(spread[1])];
 	const reach = studentQuantile(1 - tail, bias.df) * bias.standardError;
 	const limit = LIMIT_FACTOR * sd;
 	const inward = Math.hypot(reach, LIMIT_FACTOR * (sd - sdLow));
@@ -107,4 +98,31 @@ export function limitIntervals(
 		upper: [bias.mean + limit - inward, bias.mean + limit + outward],
 		method: 'mover'
 	};
+}
+
+/**
+ * Interval of the variance of one difference, MSB / n0 + (1 − 1 / n0) MSW, each part's chi-squared interval joined by the
+ * method of variance estimates recovery. With one reading a session, the chi-squared interval of the plain variance.
+ *
+ * @param parts variance parts of these sessions
+ * @see Zou GY (2013) Stat Methods Med Res 22:630-642
+ */
+export function totalVarianceInterval(
+	sessions: readonly PairMoments[],
+	parts: VarianceParts,
+	confidence = 0.95
+): Interval {
+	if (!isDetermined(parts.total)) return parts.total;
+	const tail = (1 - confidence) / 2;
+	const chi = (p: number) => chiSquaredQuantile(p, parts.dfBetween);
+	if (parts.dfWithin === 0)
+		return [(parts.total * parts.dfBetween) / chi(1 - tail), (parts.total * parts.dfBetween) / chi(tail)];
+	if (!isDetermined(parts.meanSquareBetween) || !isDetermined(parts.meanSquareWithin) || !isDetermined(parts.n0))
+		return notDeterminable('The variance parts are not determinable.');
+	const fromBetween = parts.meanSquareBetween / parts.n0;
+	const fromWithin = (1 - 1 / parts.n0) * parts.meanSquareWithin;
+	const within = worthOfWithin(sessions, parts.meanSquareWithin, parts.dfWithin);
+	const side = (p: number) =>
+		Math.hypot(fromBetween * (1 - parts.dfBetween / chi(p)), fromWithin * (1 - within / chiSquaredQuantile(p, within)));
+	return [Math.max(0, parts.total - side(1 - tail)), parts.total + side(tail)];
 }
