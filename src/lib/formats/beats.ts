@@ -16,6 +16,8 @@ export interface IntervalList {
 /** Where a sum of intervals runs away from the clock by more than this, beats were lost or the clock stood still: a new stretch begins. */
 const BREAK_S = 3;
 const WINDOW = 20;
+/** No calendar reaches further. */
+const FURTHEST_S = 8.64e12;
 
 /**
  * Places intervals by the clock of the records that they stand between.
@@ -25,11 +27,23 @@ const WINDOW = 20;
  * beats (of the middle half of the values, which a lost beat does not move) carries the intervals onto the clock. The result is right to about 1 s as a whole (devices write an
  * interval just before or just after the record it belongs to) and to some 50 ms from beat to beat.
  *
- * @param rrMs intervals in file order, ms, positive
+ * @param rrMs intervals in file order, ms; those that are not above 0 and finite are left out
  * @param anchorS clock of the nearest record before (or, at the start, after) each interval, epoch seconds
  * @returns beats in order; `sampled` ones keep the time of their record, one a time stamp
  */
 export function placeIntervals(rrMs: number[], anchorS: number[]): IntervalList {
+	return place(...usable(rrMs, anchorS));
+}
+
+/** Intervals and stamps that are figures; the others are no intervals. */
+function usable(rrMs: number[], tS: number[]): [number[], number[]] {
+	const sound = (i: number) => rrMs[i] > 0 && rrMs[i] < Infinity && Math.abs(tS[i]) <= FURTHEST_S;
+	if (rrMs.every((_, i) => sound(i))) return [rrMs, tS];
+	const keep = [...rrMs.keys()].filter(sound);
+	return [keep.map((i) => rrMs[i]), keep.map((i) => tS[i])];
+}
+
+function place(rrMs: number[], anchorS: number[]): IntervalList {
 	const n = rrMs.length;
 	let min = Infinity;
 	let max = -Infinity;
@@ -63,13 +77,14 @@ export function placeIntervals(rrMs: number[], anchorS: number[]): IntervalList 
  * Intervals that a file stamps one by one. Stamps that follow the intervals to 50 ms in four of five beats are the
  * beats' own and are kept; coarser ones only carry the intervals, as in `placeIntervals`.
  *
- * @param rrMs intervals in file order, ms, positive
- * @param tS stamp of each, epoch seconds
+ * @param given intervals in file order, ms
+ * @param stamps stamp of each, epoch seconds
  */
-export function stampedIntervals(rrMs: number[], tS: number[]): IntervalList {
+export function stampedIntervals(given: number[], stamps: number[]): IntervalList {
+	const [rrMs, tS] = usable(given, stamps);
 	let exact = 0;
 	for (let i = 1; i < tS.length; i++) if (Math.abs(tS[i] - tS[i - 1] - rrMs[i] / 1000) <= 0.05) exact++;
-	if (exact < 0.8 * (tS.length - 1)) return placeIntervals(rrMs, tS);
+	if (exact < 0.8 * (tS.length - 1)) return place(rrMs, tS);
 	let min = Infinity;
 	let max = -Infinity;
 	for (const rr of rrMs) {
@@ -97,7 +112,7 @@ function keepIncreasing(tS: number[], rrMs: number[]): { tS: Float64Array; rrMs:
 	const values: number[] = [];
 	let last = -Infinity;
 	for (let i = 0; i < tS.length; i++) {
-		if (!(tS[i] > last) || !(tS[i] <= 8.64e12)) continue;
+		if (!(tS[i] > last)) continue;
 		last = tS[i];
 		times.push(tS[i]);
 		values.push(rrMs[i]);

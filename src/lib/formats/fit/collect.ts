@@ -4,7 +4,8 @@ import { baseTypeOf, elementSize, readNumber, readText } from './base-types';
 import type { DeviceEntry } from './device';
 import { planRecord, readStep, type DeveloperField, type RecordPlan } from './record-fields';
 import { StoredBeatReader } from './stored-beats';
-import { isWholeElements, walkFit, type Definition, type WalkReport } from './walk';
+import { isWholeElements, type Definition } from './definition';
+import { walkFit, type WalkReport } from './walk';
 
 /** Seconds from 1970 to the beginning of FIT time, 1989-12-31 00:00 UTC. */
 export const FIT_EPOCH_S = 631_065_600;

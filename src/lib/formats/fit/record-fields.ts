@@ -7,7 +7,7 @@
  */
 import type { ChannelKind } from '../recording';
 import { elementSize, readNumber } from './base-types';
-import { isWholeElements, type Definition } from './walk';
+import { isWholeElements, type Definition } from './definition';
 
 export interface RecordField {
 	/** Column of the sample table. */

@@ -9,7 +9,7 @@
  *   9 event_timestamp 1/1024 s, 10 event_timestamp_12 (published by the format's owner; from memory, checked on real files)
  */
 import { readNumber } from './base-types';
-import type { Definition } from './walk';
+import type { Definition } from './definition';
 
 export interface StoredBeats {
 	/** Time of each beat, epoch seconds, in file order. */

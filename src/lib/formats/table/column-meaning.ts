@@ -37,7 +37,7 @@ const CHANNELS: [RegExp, ChannelKind][] = [
 const ELAPSED =
 	/\b(elapsed|duration|seconds?|secs?|millis|milliseconds?|minutes?|since|offset|dauer|relative)\b|^(s|t|ms)$/;
 const TIME =
-	/^(.*\b)?(time|timestamps?|ts|datetime|date|utc|epoch|unix|unixtime|zeit|uhrzeit|zeitstempel|datum|temps|heure|tiempo|hora|fecha|ora|tid|clock|when|elapsed|duration|seconds?|secs?|millis|milliseconds?)\b|^(s|t|ms)$/;
+	/^(.*\b)?(time|timestamps?|ts|datetime|date|utc|epoch|unix|unixtime|zeit|uhrzeit|zeitstempel|datum|temps|heure|tiempo|hora|fecha|ora|tid|clock|when|start|begin|elapsed|duration|seconds?|secs?|millis|milliseconds?)\b|^(s|t|ms)$/;
 
 /** Words of a name in lower case without accents, and the unit in brackets or behind an underscore. */
 export function nameWords(header: string): { words: string; unit: string } {

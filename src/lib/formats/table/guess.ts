@@ -7,23 +7,16 @@
  */
 import type { ChannelKind } from '../recording';
 import { cellNumber, LineWalker, splitCells, type Delimiter } from './cells';
-import { columnMeaning, nameWords, type ColumnMeaning } from './column-meaning';
+import { columnMeaning, type ColumnMeaning } from './column-meaning';
+import { cellIsFigure, DELIMITERS, fromContent, scaleIntervals, usesDecimalComma } from './guess-content';
+import { guessTime } from './guess-time';
 import type { ChannelColumn, TableGuess, TableMapping } from './mapping';
 import { findSplitColumns, joinRow, type ColumnShape } from './split-decimals';
-import {
-	dateOrderOf,
-	numericTimeForm,
-	parseDateTime,
-	parseElapsedClock,
-	parseTimeOfDay,
-	type DateOrder,
-	type TimeForm
-} from './time-form';
+import { parseDateTime } from './time-form';
 
 const LOOKED_AT = 400;
 const HEADER_WITHIN = 120;
 const LONGEST_LINE = 20_000;
-const DELIMITERS: Delimiter[] = [';', '\t', ',', '|', ' '];
 
 interface Header {
 	delimiter: Delimiter;
@@ -104,6 +97,9 @@ function bestHeader(lines: string[]): Header | null {
 }
 
 function scoreHeader(lines: string[], index: number, delimiter: Delimiter, names: string[]): Header | null {
+	// A line of values may hold a word such as `HeartRate` too; names are not figures.
+	const figures = names.filter((name) => cellIsFigure(name, false) || parseDateTime(name) !== null).length;
+	if (figures > 0.2 * names.length) return null;
 	const meanings = names.map((name) => columnMeaning(name));
 	const long =
 		meanings.some((meaning) => meaning?.role === 'name') && meanings.some((meaning) => meaning?.role === 'value');
@@ -141,18 +137,6 @@ function scoreHeader(lines: string[], index: number, delimiter: Delimiter, names
 			blank +
 			Math.min(fitting, 5)
 	};
-}
-
-/** True where cells such as `3,5` stand in a table that is not parted by commas, or in quotes in one that is. */
-function usesDecimalComma(lines: string[], delimiter: Delimiter): boolean {
-	let commas = 0;
-	let points = 0;
-	for (const line of lines)
-		for (const cell of splitCells(line, delimiter, 200)) {
-			if (/^[-+]?\d+,\d+(e[-+]?\d+)?$/i.test(cell)) commas++;
-			else if (/^[-+]?\d+\.\d+$/.test(cell)) points++;
-		}
-	return commas > points;
 }
 
 function fromHeader(lines: string[], header: Header): TableGuess {
@@ -265,18 +249,6 @@ function oneColumnPerKind(
 	return { channels, otherHeartRates };
 }
 
-/** Intervals whose header names no unit: values below 10 are seconds. */
-function scaleIntervals(rows: string[][], channels: ChannelColumn[], decimalComma: boolean): void {
-	for (const entry of channels) {
-		if (entry.kind !== 'rrInterval') continue;
-		const values = rows
-			.map((row) => cellNumber((row[entry.column] ?? '').split(/[\s;|]/)[0], decimalComma))
-			.filter((value) => value > 0)
-			.sort((a, b) => a - b);
-		if (values.length > 0) entry.factor = values[values.length >> 1] < 10 ? 1000 : 1;
-	}
-}
-
 function longNames(rows: string[][], nameColumn: number, valueColumn: number): NonNullable<TableMapping['long']> {
 	const names: Record<string, Omit<ChannelColumn, 'column'>> = {};
 	const taken = new Set<ChannelKind>();
@@ -294,179 +266,4 @@ function longNames(rows: string[][], nameColumn: number, valueColumn: number): N
 		};
 	}
 	return { nameColumn, valueColumn, names };
-}
-
-const PREFERENCE: TimeForm[] = [
-	'date-time',
-	'epoch-ns',
-	'epoch-us',
-	'epoch-ms',
-	'epoch-s',
-	'day-number',
-	'time-of-day',
-	'elapsed-clock',
-	'elapsed-ms',
-	'elapsed-s',
-	'elapsed-min'
-];
-
-/** Of several columns of times the one that says most: moments before times of day before elapsed time. */
-function guessTime(
-	rows: string[][],
-	names: string[],
-	meanings: (ColumnMeaning | undefined)[],
-	columns: number[],
-	decimalComma: boolean,
-	notes: TableGuess['notes']
-): TableMapping['time'] {
-	let best: TableMapping['time'] = null;
-	let bestRank = Infinity;
-	let dateColumn: number | null = null;
-	for (const column of columns) {
-		const cells = rows.map((row) => row[column] ?? '').filter((cell) => cell !== '');
-		if (cells.length === 0) continue;
-		const meaning = meanings[column];
-		const form = timeFormOf(cells, names[column] ?? '', meaning?.role === 'time' && meaning.elapsed, decimalComma);
-		if (!form) continue;
-		const { order, sure } = dateOrderOf(cells);
-		if (
-			form === 'date-time' &&
-			!parseDateTime(cells[0], order)?.hasTime &&
-			cells.every((cell) => !parseDateTime(cell, order)?.hasTime)
-		) {
-			dateColumn ??= column;
-			if (!sure) notes.push(ambiguousDates(order));
-			continue;
-		}
-		// A start or end that is the same in every row is no clock of the rows, unless there is none besides.
-		const constant = cells.length > 2 && cells.every((cell) => cell === cells[0]);
-		const rank = PREFERENCE.indexOf(form) + (constant ? PREFERENCE.length : 0);
-		if (rank >= bestRank) continue;
-		bestRank = rank;
-		best = { column, form, dateOrder: order, dateColumn: null };
-		if (form === 'date-time' && !sure) notes.push(ambiguousDates(order));
-	}
-	if (best && best.form === 'time-of-day' && dateColumn !== null) {
-		const dates = rows.map((row) => row[dateColumn] ?? '');
-		best.dateColumn = dateColumn;
-		best.dateOrder = dateOrderOf(dates).order;
-	}
-	return best;
-}
-
-function ambiguousDates(order: DateOrder): { code: string; message: string } {
-	return {
-		code: 'ambiguous-date',
-		message: `The dates could be day-month or month-day. They are read with the ${order === 'mdy' ? 'month' : 'day'} first; check the date.`
-	};
-}
-
-function timeFormOf(cells: string[], name: string, elapsedName: boolean, decimalComma: boolean): TimeForm | null {
-	const some = cells.slice(0, 200);
-	const share = (test: (cell: string) => boolean) => some.filter(test).length / some.length;
-	const numbers = some.map((cell) => cellNumber(cell, decimalComma)).filter((value) => !Number.isNaN(value));
-	if (numbers.length >= 0.8 * some.length && share((cell) => parseDateTime(cell) !== null) < 0.5) {
-		const { words, unit } = nameWords(name);
-		return numericTimeForm(numbers, `${words} ${unit}`.trim());
-	}
-	const { order } = dateOrderOf(some);
-	if (share((cell) => parseDateTime(cell, order) !== null) >= 0.7) return 'date-time';
-	const startsAtZero = parseElapsedClock(some[0]) < 60 && !/[ap]\.?m/i.test(some[0]);
-	if (share((cell) => !Number.isNaN(parseElapsedClock(cell))) >= 0.7 && (elapsedName || startsAtZero))
-		return 'elapsed-clock';
-	if (share((cell) => !Number.isNaN(parseTimeOfDay(cell))) >= 0.7) return 'time-of-day';
-	if (share((cell) => !Number.isNaN(parseElapsedClock(cell))) >= 0.7) return 'elapsed-clock';
-	return null;
-}
-
-/** No header: content decides. */
-function fromContent(lines: string[]): TableGuess {
-	for (const delimiter of DELIMITERS) {
-		const all = lines.map((line) => splitCells(line, delimiter));
-		const counts = new Map<number, number>();
-		for (const cells of all) if (cells.length > 1) counts.set(cells.length, (counts.get(cells.length) ?? 0) + 1);
-		const [width, rowsOfWidth] = [...counts].sort((a, b) => b[1] - a[1])[0] ?? [0, 0];
-		if (width < 2 || width > 500 || rowsOfWidth < 2) continue;
-		const rows = all.filter((cells) => cells.length === width);
-		const decimalComma = usesDecimalComma(lines, delimiter);
-		const columns = Array.from({ length: width }, (_, column) => rows.map((row) => row[column]));
-		const times = columns.flatMap((cells, column) => (risingTime(cells, decimalComma) ? [column] : []));
-		const notes: TableGuess['notes'] = [];
-		const time = guessTime(rows, [], [], times, decimalComma, notes);
-		if (!time) continue;
-		const kind = columns.map((cells, column) => (column === time.column ? null : valuesLike(cells, decimalComma)));
-		const column = kind.indexOf('heartRate') >= 0 ? kind.indexOf('heartRate') : kind.indexOf('rrInterval');
-		if (column < 0) continue;
-		const firstRow = all.findIndex((cells) => cells.length === width && cellIsFigure(cells[column], decimalComma));
-		const named = all.slice(0, firstRow).findLast((cells) => cells.length === width && /\p{L}/u.test(cells[column]));
-		if (named)
-			return nothingFound(
-				lines,
-				`No column is named as a heart rate. The columns are: ${named.slice(0, 20).join(', ')}.`
-			);
-		notes.push({
-			code: 'no-header',
-			message: `The table has no column names. Column ${time.column + 1} is taken as the time and column ${column + 1} as the ${kind[column] === 'heartRate' ? 'heart rate' : 'RR interval'}; check them.`
-		});
-		const channels: ChannelColumn[] = [{ column, kind: kind[column] ?? 'heartRate', factor: 1, offset: 0 }];
-		scaleIntervals(rows, channels, decimalComma);
-		const firstDataLine = all.findIndex((cells) => cells.length === width) + 1;
-		return {
-			mapping: { layout: 'wide', delimiter, decimalComma, headerLine: null, firstDataLine, time, channels, long: null },
-			notes,
-			columnNames: Array.from({ length: width }, (_, i) => `column ${i + 1}`),
-			firstRows: rows.slice(0, 12),
-			otherHeartRates: []
-		};
-	}
-	const single = lines.map((line) => line.trim()).filter((line) => line !== '');
-	if (valuesLike(single.slice(1), false) === 'heartRate')
-		return {
-			...nothingFound(lines, ''),
-			notes: [{ code: 'no-time', message: 'The file holds one column of values like a heart rate and no times.' }]
-		};
-	return nothingFound(
-		lines,
-		'No line names a heart rate column, and no column holds values like a heart rate beside a time.'
-	);
-}
-
-function nothingFound(lines: string[], message: string): TableGuess {
-	return {
-		mapping: null,
-		notes: [{ code: 'no-heart-rate-column', message }],
-		columnNames: [],
-		firstRows: lines.slice(0, 12).map((line) => [line.slice(0, 200)]),
-		otherHeartRates: []
-	};
-}
-
-function cellIsFigure(cell: string, decimalComma: boolean): boolean {
-	return !Number.isNaN(cellNumber(cell, decimalComma));
-}
-
-function risingTime(cells: string[], decimalComma: boolean): boolean {
-	if (
-		cells.filter((cell) => parseDateTime(cell) !== null || !Number.isNaN(parseTimeOfDay(cell))).length >=
-		0.9 * cells.length
-	)
-		return true;
-	const numbers = cells.map((cell) => cellNumber(cell, decimalComma));
-	let rising = 0;
-	for (let i = 1; i < numbers.length; i++) if (numbers[i] > numbers[i - 1]) rising++;
-	return numbers.length > 2 && rising >= 0.9 * (numbers.length - 1);
-}
-
-function valuesLike(cells: string[], decimalComma: boolean): ChannelKind | null {
-	const numbers = cells
-		.map((cell) => cellNumber(cell, decimalComma))
-		.filter((value) => value > 0)
-		.sort((a, b) => a - b);
-	if (numbers.length < 0.5 * cells.length || numbers.length < 2) return null;
-	const median = numbers[numbers.length >> 1];
-	const inside = (low: number, high: number) =>
-		numbers.filter((value) => value >= low && value <= high).length >= 0.9 * numbers.length;
-	if (median >= 40 && median <= 220 && inside(25, 240)) return 'heartRate';
-	if (inside(240, 2500) || inside(0.24, 2.5)) return 'rrInterval';
-	return null;
 }

@@ -18,12 +18,13 @@
 import { assemble, type FoundInFile } from '../assemble';
 import { placeIntervals, stampedIntervals, type IntervalList } from '../beats';
 import { isOnFoot, toSteps } from '../cadence';
-import type { ChannelKind, HeartRateSource, Reading, ReadingWarning, ReadOptions } from '../recording';
+import type { HeartRateSource, Reading, ReadingWarning, ReadOptions } from '../recording';
 import { SampleTable } from '../sample-table';
-import { counted, timeText } from '../time-text';
+import { counted } from '../time-text';
 import { cellNumber, LineWalker, splitCells } from './cells';
 import { activityOf, deviceOf, factsOf, startOf, type Facts } from './facts';
 import { guessTableMapping, transpose } from './guess';
+import { LongRows } from './long-rows';
 import type { ChannelColumn, TableGuess, TableMapping } from './mapping';
 import { joinRow } from './split-decimals';
 import { parseDateTime, parseElapsedClock, parseTimeOfDay, secondsOfNumber } from './time-form';
@@ -33,11 +34,12 @@ export const TABLE_READER_VERSION = 'table 1';
 /**
  * Reads a table with a guessed mapping.
  *
- * @param text decoded text of the file
+ * @param quoted decoded text of the file
  * @param options what the importer knows
  * @returns a recording, or a refusal that names the columns found
  */
-export function readGuessedTable(text: string, options: ReadOptions = {}): Reading {
+export function readGuessedTable(quoted: string, options: ReadOptions = {}): Reading {
+	const text = withoutLineQuotes(quoted);
 	const guess = guessTableMapping(text);
 	if (!guess.mapping) {
 		const note = guess.notes.at(-1);
@@ -52,6 +54,17 @@ export function readGuessedTable(text: string, options: ReadOptions = {}): Readi
 		};
 	}
 	return readTable(text, chosenHeartRate(guess, options), options, guess);
+}
+
+/** Some programs put each whole line in quotes; the quotes are taken off where the first lines all look like that. */
+function withoutLineQuotes(text: string): string {
+	const first = text
+		.slice(0, 20_000)
+		.split('\n', 12)
+		.slice(0, 10)
+		.filter((line) => line.trim() !== '');
+	const whole = first.length > 1 && first.every((line) => /^"[^"]*[,;\t][^"]*"$/.test(line.trim()));
+	return whole ? text.replace(/^"([^"\n]*)"[ \t]*$/gm, '$1') : text;
 }
 
 /** The mapping with the heart-rate column that the importer chose. */
@@ -415,56 +428,5 @@ class TableReader {
 			used,
 			...rest.map((other) => ({ key: other.name, label: `column ${other.name}`, n: 0, min: NaN, max: NaN }))
 		];
-	}
-}
-
-/** Rows of a long table: one row a time, its channels gathered from wherever they stand in the file. */
-class LongRows {
-	private readonly rowAt = new Map<number, number>();
-	private readonly lastOf = new Map<ChannelKind, number>();
-	private backward = 0;
-	private backwardAt = NaN;
-	private repeated = 0;
-	private repeatedAt = NaN;
-	private readonly gathered: { tS: number; kind: ChannelKind; value: number }[] = [];
-
-	constructor(private readonly table: SampleTable) {}
-
-	add(tS: number, kind: ChannelKind, value: number): void {
-		const last = this.lastOf.get(kind) ?? -Infinity;
-		if (tS < last && this.backward++ === 0) this.backwardAt = tS;
-		this.lastOf.set(kind, tS);
-		this.gathered.push({ tS, kind, value });
-	}
-
-	/** Fills the table in order of time, and says what was odd within a channel; between channels the order means nothing. */
-	finish(): ReadingWarning[] {
-		const order = this.gathered.map((_, i) => i).sort((a, b) => this.gathered[a].tS - this.gathered[b].tS || a - b);
-		for (const i of order) {
-			const { tS, kind, value } = this.gathered[i];
-			let row = this.rowAt.get(tS);
-			if (row === undefined) {
-				row = this.table.addRow(tS);
-				this.rowAt.set(tS, row);
-			}
-			const present = this.table.get(row, kind);
-			if (present === present) {
-				if (this.repeated++ === 0) this.repeatedAt = tS;
-			} else this.table.set(row, kind, value);
-		}
-		const warnings: ReadingWarning[] = [];
-		if (this.backward > 0)
-			warnings.push({
-				code: 'backward-step',
-				message: `Within a channel the clock steps back ${counted(this.backward, 'time')}, first to ${timeText(this.backwardAt)}. The rows are put in order of time; no time is changed.`,
-				at: { tS: this.backwardAt }
-			});
-		if (this.repeated > 0)
-			warnings.push({
-				code: 'duplicate-time',
-				message: `${counted(this.repeated, 'row')} repeat a channel at a time that it already has, first at ${timeText(this.repeatedAt)}. The first value stays.`,
-				at: { tS: this.repeatedAt }
-			});
-		return warnings;
 	}
 }
