@@ -7,14 +7,16 @@ import { bytea, createdAt, float64Column, id } from './columns';
 import { deviceModels, deviceUnits } from './device';
 import { sessions } from './session';
 import { studies } from './study';
-import { members } from './team';
+import { members, teams } from './team';
 
 /** The bytes as uploaded. The same bytes are kept once per team. */
 export const rawFiles = pgTable(
 	'raw_file',
 	{
 		id: id(),
-		teamId: uuid('team_id').notNull(),
+		teamId: uuid('team_id')
+			.notNull()
+			.references(() => teams.id, { onDelete: 'cascade' }),
 		sha256: text('sha256').notNull(),
 		sizeBytes: bigint('size_bytes', { mode: 'number' }).notNull(),
 		bytes: bytea('bytes').notNull(),
