@@ -7,14 +7,16 @@ import { QUEUE_SCHEMA } from './queue';
 
 /** First half of the lock's key, so that other advisory locks do not meet these. */
 const LEASE_SPACE = 7_140;
-/** A job is fetched a moment before it is leased. */
-const GRACE_S = 5;
 
 export class JobLeases {
 	/** One connection for all of this worker's locks, opened with the first. */
 	private holder: Promise<postgres.ReservedSql> | null = null;
 
-	constructor(private readonly sql: postgres.Sql) {}
+	constructor(
+		private readonly sql: postgres.Sql,
+		/** A job is fetched a moment before it is leased. */
+		private readonly graceS: number
+	) {}
 
 	async take(jobId: string): Promise<void> {
 		this.holder ??= this.sql.reserve();
@@ -31,7 +33,7 @@ export class JobLeases {
 	async orphans(): Promise<{ id: string; queue: string }[]> {
 		const rows = await this.sql<{ id: string; name: string }[]>`
 			select j.id, j.name from ${this.sql(QUEUE_SCHEMA)}.job j
-			where j.state = 'active' and j.started_on < now() - make_interval(secs => ${GRACE_S})
+			where j.state = 'active' and j.started_on < now() - make_interval(secs => ${this.graceS})
 			and not exists (
 				select 1 from pg_locks l
 				where l.locktype = 'advisory' and l.objsubid = 2 and l.granted

@@ -18,6 +18,8 @@ export interface WorkerOptions {
 	engine?: Engine & { close?(): Promise<void> };
 	/** Told of everything that goes wrong; defaults to stderr. */
 	onError?(what: string, cause: unknown): void;
+	/** How often jobs of dead workers are looked for; default 10 s. */
+	sweepEveryMs?: number;
 }
 
 export interface RunningWorker {
@@ -28,6 +30,8 @@ export interface RunningWorker {
 /** Jobs of a queue at the same time in one worker. */
 const AT_ONCE: Record<QueueName, number> = { [QUEUES.readUpload]: 2, [QUEUES.proposeShift]: 1, [QUEUES.askClock]: 1 };
 const SWEEP_EVERY_MS = 10_000;
+/** From fetching a job to leasing it. */
+const LEASE_GRACE_S = 3;
 
 export async function startWorker(options: WorkerOptions): Promise<RunningWorker> {
 	const onError = options.onError ?? ((what, cause) => console.error(`background worker: ${what}:`, cause));
@@ -37,7 +41,7 @@ export async function startWorker(options: WorkerOptions): Promise<RunningWorker
 	boss.on('error', (cause) => onError('queue', cause));
 	await boss.start();
 	await createQueues(boss);
-	const leases = new JobLeases(sql);
+	const leases = new JobLeases(sql, LEASE_GRACE_S);
 
 	const handlers: { [N in QueueName]: (data: JobData[N], lastTry: boolean) => Promise<void> } = {
 		[QUEUES.readUpload]: async ({ uploadId }, lastTry) => {
@@ -85,7 +89,7 @@ export async function startWorker(options: WorkerOptions): Promise<RunningWorker
 	};
 	await sweep();
 	await queueUnfinished(db);
-	const sweeping = setInterval(() => void sweep().catch((cause: unknown) => onError('looking for orphaned jobs', cause)), SWEEP_EVERY_MS);
+	const sweeping = setInterval(() => void sweep().catch((cause: unknown) => onError('looking for orphaned jobs', cause)), options.sweepEveryMs ?? SWEEP_EVERY_MS);
 	sweeping.unref();
 
 	return {
