@@ -1,5 +1,6 @@
 /** Runs the built application as a child process that ends with us, however we end. */
 import { spawn, type ChildProcess } from 'node:child_process';
+import { get } from 'node:http';
 import { join } from 'node:path';
 import { PROJECT_ROOT } from './data-folder';
 import { StopSentence } from './sentence';
@@ -9,6 +10,18 @@ export interface RunningServer {
 	/** Resolves when the server has ended by itself. */
 	ended: Promise<number | null>;
 	stop(): Promise<void>;
+}
+
+/** Asked over node:http, since fetch refuses some ports that a server may well have. */
+function answers(address: string): Promise<boolean> {
+	return new Promise((done) => {
+		const request = get(address, { timeout: 3000 }, (answer) => {
+			answer.resume();
+			done(answer.statusCode === 200);
+		});
+		request.on('timeout', () => request.destroy());
+		request.on('error', () => done(false));
+	});
 }
 
 /** Starts the server with these settings in its environment and waits until it answers. */
@@ -25,8 +38,7 @@ export async function startServer(env: Record<string, string | undefined>, optio
 	ended.then(() => (gone = true));
 	for (;;) {
 		if (gone) throw new StopSentence(`The server ended before it answered. Is port ${env.PORT} taken? Set PORT to another one; its own words are above.`);
-		const answer = await fetch(`${address}/healthz`).catch(() => null);
-		if (answer?.ok) break;
+		if (await answers(`${address}/healthz`)) break;
 		if (Date.now() > deadline) {
 			child.kill('SIGKILL');
 			throw new StopSentence(`The server did not answer on ${address} within a minute; its own words are above.`);
