@@ -59,7 +59,11 @@ async function inspectFile(file: string): Promise<Record<string, unknown>[]> {
 	} catch (error) {
 		const code = error instanceof Error && 'code' in error ? String(error.code) : '';
 		const message =
-			code === 'ENOENT' ? `There is no file ${file}. Check the path.` : code === 'EISDIR' ? `${file} is a folder. Name the files in it.` : `${file} cannot be opened (${code}).`;
+			code === 'ENOENT'
+				? `There is no file ${file}. Check the path.`
+				: code === 'EISDIR'
+					? `${file} is a folder. Name the files in it.`
+					: `${file} cannot be opened (${code}).`;
 		return [{ file, error: { code: 'cannot-open', message } }];
 	}
 	const readings = readFiles(bytes, basename(file), { nowS: Date.now() / 1000 });
