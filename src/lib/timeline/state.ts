@@ -95,6 +95,21 @@ export function openState(document: SessionDocument, traces: ReadonlyMap<string,
 	};
 }
 
+/**
+ * The state over a newer document of the same session.
+ *
+ * @param keep edits that the server does not have yet: they stay as they are here
+ */
+export function withDocument(state: EditorState, document: SessionDocument, keep: { tagIds: readonly string[]; recordingIds: readonly string[] }): EditorState {
+	const alignments: Record<string, AlignmentState> = { ...document.alignments };
+	for (const id of keep.recordingIds) if (Object.hasOwn(state.alignments, id)) alignments[id] = state.alignments[id];
+	const kept = new Map(state.tags.filter((t) => keep.tagIds.includes(t.id)).map((t) => [t.id, t]));
+	const tags = document.tags.map((t) => kept.get(t.id) ?? t);
+	for (const [id, tag] of kept) if (!document.tags.some((t) => t.id === id)) tags.push(tag);
+	const held = tags.find((t) => t.id === state.heldTagId);
+	return { ...state, document, alignments, tags, heldTagId: held ? held.id : null, draft: document.can.annotate ? state.draft : null, whole: wholeSpan(document, state.tracks, alignments) };
+}
+
 /** From the first to the last sample of all recordings where they stand; the session's own span when there are none. */
 export function wholeSpan(
 	document: Pick<SessionDocument, 'startsAtS' | 'endsAtS'>,
