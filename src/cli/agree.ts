@@ -203,6 +203,7 @@ export function jsonFigures(f: Figures): Record<string, unknown> {
 		within10pctCi95: valueOrNull(f.within10pctCi95),
 		within5pct: valueOrNull(f.within5pct),
 		withinEc13: valueOrNull(f.withinEc13),
+		withinEc13Ci95: valueOrNull(f.withinEc13Ci95),
 		halfRateShare: valueOrNull(f.halfRateShare),
 		doubleRateShare: valueOrNull(f.doubleRateShare),
 		equivalence,

@@ -206,10 +206,10 @@ export function fisherQuantile(p: number, df1: number, df2: number): number {
  */
 export function noncentralStudentCdf(t: number, df: number, delta: number): number {
 	const logFront = Math.log(2) + (df / 2) * Math.log(df / 2) - logGamma(df / 2);
-	const spread = Math.max(1, 12 / Math.sqrt(2 * df));
-	const from = -Math.min(spread * (df < 8 ? 80 / df : 3), 200);
-	const to = Math.min(spread, 4);
-	const steps = 2000;
+	// Where the weight of s is below 1e-17 of its peak, on either side.
+	const from = -Math.max(14 / Math.sqrt(2 * df), 42 / df);
+	const to = Math.min(14 / Math.sqrt(2 * df), 0.5 * Math.log(1 + 100 / df) + 0.1);
+	const steps = 400;
 	const width = (to - from) / steps;
 	let sum = 0;
 	for (let i = 0; i <= steps; i++) {

@@ -89,6 +89,7 @@ export interface Figures {
 	within10pctCi95: Interval;
 	/** Within the greater of 10 % and 5 bpm. */
 	withinEc13: Figure;
+	withinEc13Ci95: Interval;
 	/** Wearable within 10 % of half, and of twice, the reference. */
 	halfRateShare: Figure;
 	doubleRateShare: Figure;
@@ -185,6 +186,7 @@ export function figuresOfSessions(
 		within10pct: shareOf(whole.within10Pct, whole.n),
 		within10pctCi95: shareInterval(overClusters((m) => m.within10Pct / m.n)),
 		withinEc13: shareOf(whole.withinEc13, whole.n),
+		withinEc13Ci95: shareInterval(overClusters((m) => m.withinEc13 / m.n)),
 		halfRateShare: shareOf(whole.halfRate, whole.n),
 		doubleRateShare: shareOf(whole.doubleRate, whole.n),
 		equivalence: equivalence(biasEstimate, (options.plan ?? DEFAULT_PLAN).equivalenceMarginBpm),

@@ -12,18 +12,26 @@ export interface LimitIntervals {
 	method: 'exact' | 'mover' | null;
 }
 
+/** Factors depend on n alone and take a few milliseconds: once is enough. */
+const knownFactors = new Map<string, [number, number]>();
+
 /**
  * Factors f of the exact interval of the upper limit: mean + f · SD, from the non-central t; the lower limit mirrors it.
  * @param n independent differences, at least 2
  * @see Carkeet A (2015) Optom Vis Sci 92:e71-80
  */
 export function exactLimitFactors(n: number, confidence = 0.95): [number, number] {
+	const key = `${n} ${confidence}`;
+	const known = knownFactors.get(key);
+	if (known) return known;
 	const shift = normalQuantile(0.975) * Math.sqrt(n);
 	const tail = (1 - confidence) / 2;
-	return [
+	const factors: [number, number] = [
 		noncentralStudentQuantile(tail, n - 1, shift) / Math.sqrt(n),
 		noncentralStudentQuantile(1 - tail, n - 1, shift) / Math.sqrt(n)
 	];
+	knownFactors.set(key, factors);
+	return factors;
 }
 
 /**
