@@ -13,9 +13,9 @@ import type { WearablePairs } from './session-pairs';
 
 export type Analysis = keyof BothAnalyses<unknown>;
 
-/** Cells of the plots, in bpm: fine enough to show a lock line, coarse enough to count. */
-const SCATTER: HexLattice = { cellX: 2.2, rowY: 1.9 };
-const DIFFERENCE: HexLattice = { cellX: 2.2, rowY: 1.9 };
+/** Cells of the plots, in whole bpm, so that every cell holds equally many of the whole numbers that devices write. */
+const SCATTER: HexLattice = { cellX: 2, rowY: 3 };
+const DIFFERENCE: HexLattice = { cellX: 2, rowY: 2 };
 const SHARE_STEP_BPM = 0.5;
 const SHARE_MAX_BPM = 30;
 
