@@ -1,0 +1,3 @@
+ALTER TABLE "review" ADD COLUMN "taken_back_at" timestamp with time zone;--> statement-breakpoint
+CREATE UNIQUE INDEX "review_one_open" ON "review" USING btree ("session_id") WHERE "review"."decision" is null and "review"."taken_back_at" is null;--> statement-breakpoint
+ALTER TABLE "review" ADD CONSTRAINT "review_taken_back_undecided" CHECK ("review"."taken_back_at" is null or "review"."decision" is null);
