@@ -6,8 +6,9 @@
  * smoothing it is the shift between them. Heart rate alone cannot tell clock from lag; see `clock-offset`.
  */
 import { coarseSearch, peaksOf } from './coarse-search';
-import { confidenceOf, settleCandidate, type Confidence } from './confidence';
-import { refine, type Refined } from './response-bank';
+import { confidenceOf, type Confidence } from './confidence';
+import { compared } from './disagreement';
+import { leastWholeSecond, refine, type Refined } from './response-bank';
 import { heartRateGrid } from './second-grid';
 import type { ShiftEstimate } from './shift';
 import type { Trace } from '../formats/recording';
@@ -55,9 +56,11 @@ export function searchBestFitShift(reference: Pick<Trace, 'tS' | 'value'>, weara
 	if (candidates.length === 0 || !(candidates[0].score > 0))
 		return { estimate: nothing('flat', 'Not determinable: the two traces have nothing in common at any shift. Check that both files belong to the same session, or place the offset by hand.'), evidence: null };
 
-	const refined = refine(r, w, candidates[0].shiftS);
-	const settled = candidates.map((c, i) => (i === 0 ? refined.plainS : settleCandidate(r, w, c.shiftS)));
-	const confidence = confidenceOf(r, w, refined, settled);
+	const bare = compared(r.startS, r.value);
+	const worn = compared(w.startS, w.value);
+	const refined = refine(bare, worn, candidates[0].shiftS);
+	const settled = candidates.map((c, i) => (i === 0 ? refined.plainS : leastWholeSecond(bare, worn, Math.round(c.shiftS), 4)));
+	const confidence = confidenceOf(bare, worn, refined, settled, Math.min(r.valid, w.valid));
 	const lead = candidates.length > 1 ? (candidates[0].score - candidates[1].score) * Math.sqrt(w.valid) : candidates[0].score * Math.sqrt(w.valid);
 	const evidence: Evidence = { lead, confidence, refined, validS: w.valid, overlapShare: confidence.overlapS / Math.max(1, Math.min(r.valid, w.valid)) };
 	const { code, sentence } = judge(evidence);

@@ -3,8 +3,9 @@
  * other candidates compete. Seconds within a block stay together, since they are not independent.
  */
 import { randomBits } from './random-bits';
-import { compared, disagreement, NO_SMOOTHER, type Compared, type Refined } from './response-bank';
-import type { SecondGrid } from './second-grid';
+import { blockAgreement, compared, levelAgreement, type Compared } from './disagreement';
+import type { Refined } from './response-bank';
+import { NO_SMOOTHER } from './smoothers';
 
 export interface Confidence {
 	/** Share of resamples in which the best candidate beats all others. */
@@ -24,27 +25,18 @@ const RESAMPLES = 300;
 const NEAR_STEP_S = 0.25;
 const NEAR_STEPS = 12;
 
-/** Sums of bounded agreement of one block at one shift, and the seconds that it rests on. */
-interface BlockSums {
-	/** blocks × shifts */
-	sum: Float64Array;
-	count: Float64Array;
-	blocks: number;
-	shifts: number;
-}
-
 /**
- * @param candidates refined shifts with the bare reference, best first; the first belongs to `refined`
+ * @param bare the reference as recorded
+ * @param w the wearable
+ * @param candidatesS refined shifts with the bare reference, best first; the first belongs to `refined`
+ * @param leastValidS seconds with a value of the side that has fewer
+ * @param every look at one second in this many only
  */
-export function confidenceOf(reference: SecondGrid, wearable: SecondGrid, refined: Refined, candidatesS: number[]): Confidence {
-	const w = compared(wearable.startS, wearable.value);
-	const bare = compared(reference.startS, reference.value);
-	const own = refined.smoother === NO_SMOOTHER ? bare : compared(reference.startS, refined.smoother.apply(reference.value));
-	const ownShiftS = refined.totalS + refined.smoother.delayS;
-
-	const nearS = Array.from({ length: 2 * NEAR_STEPS + 1 }, (_, k) => ownShiftS + (k - NEAR_STEPS) * NEAR_STEP_S);
-	const near = blockSums(own, w, nearS);
-	const rivals = blockSums(bare, w, candidatesS);
+export function confidenceOf(bare: Compared, w: Compared, refined: Refined, candidatesS: number[], leastValidS: number, every = 1): Confidence {
+	const own = refined.smoother === NO_SMOOTHER ? bare : compared(bare.startS, refined.smoother.apply(bare.value));
+	const nearS = Array.from({ length: 2 * NEAR_STEPS + 1 }, (_, k) => refined.throughSmootherS + (k - NEAR_STEPS) * NEAR_STEP_S);
+	const near = blockAgreement(own, w, nearS, BLOCK_S, every);
+	const rivals = blockAgreement(bare, w, candidatesS, BLOCK_S, every);
 
 	const random = randomBits(20_250_101);
 	const estimates = new Float64Array(RESAMPLES);
@@ -75,12 +67,11 @@ export function confidenceOf(reference: SecondGrid, wearable: SecondGrid, refine
 	const at = (share: number) => estimates[Math.min(RESAMPLES - 1, Math.round(share * (RESAMPLES - 1)))];
 
 	const overlap = levelAgreement(bare, w, candidatesS[0] ?? refined.plainS);
-	const least = Math.max(1, Math.min(reference.valid, wearable.valid));
 	return {
 		win: wins / RESAMPLES,
 		standardErrorS: (at(0.84) - at(0.16)) / 2,
 		spread90S: at(0.95) - at(0.05),
-		agreement: overlap.mean * Math.min(1, overlap.n / least),
+		agreement: overlap.mean * Math.min(1, overlap.n / Math.max(1, leastValidS)),
 		overlapS: overlap.n
 	};
 }
@@ -93,59 +84,4 @@ function vertex(sum: Float64Array, count: Float64Array, best: number): number {
 	const [a, b, c] = [best - 1, best, best + 1].map((k) => meanOf(sum[k], count[k]));
 	const curve = a - 2 * b + c;
 	return curve < 0 ? Math.max(-0.5, Math.min(0.5, (0.5 * (a - c)) / curve)) : 0;
-}
-
-/** Bounded agreement (level and slope) per block of the wearable's minutes and per shift. */
-function blockSums(reference: Compared, wearable: Compared, shiftsS: number[]): BlockSums {
-	const blocks = Math.max(1, Math.ceil(wearable.value.length / BLOCK_S));
-	const shifts = shiftsS.length;
-	const sum = new Float64Array(blocks * shifts);
-	const count = new Float64Array(blocks * shifts);
-	for (let s = 0; s < shifts; s++) {
-		const offset = wearable.startS + shiftsS[s] - reference.startS;
-		const whole = Math.floor(offset);
-		const part = offset - whole;
-		const first = Math.max(0, -whole);
-		const last = Math.min(wearable.value.length, reference.value.length - 1 - whole);
-		for (let i = first; i < last; i++) {
-			const k = i + whole;
-			const e = wearable.value[i] - (reference.value[k] * (1 - part) + reference.value[k + 1] * part);
-			if (e !== e) continue;
-			const at = Math.floor(i / BLOCK_S) * shifts + s;
-			const g = wearable.slope[i] - (reference.slope[k] * (1 - part) + reference.slope[k + 1] * part);
-			sum[at] += 49 / (e * e + 49) + (g === g ? 25 / (g * g + 25) : 0.5);
-			count[at]++;
-		}
-	}
-	return { sum, count, blocks, shifts };
-}
-
-/** Mean of 49 / (49 + e²) over the seconds that can be compared: 1 = the same, 0.5 = 7 bpm apart. */
-function levelAgreement(reference: Compared, wearable: Compared, shiftS: number): { mean: number; n: number } {
-	const loss = { sum: 0, n: 0 };
-	const offset = wearable.startS + shiftS - reference.startS;
-	const whole = Math.round(offset);
-	for (let i = Math.max(0, -whole); i < Math.min(wearable.value.length, reference.value.length - whole); i++) {
-		const e = wearable.value[i] - reference.value[i + whole];
-		if (e !== e) continue;
-		loss.sum += 49 / (e * e + 49);
-		loss.n++;
-	}
-	return { mean: loss.n > 0 ? loss.sum / loss.n : 0, n: loss.n };
-}
-
-/** The candidate refined against the bare reference: where its agreement is highest within ±4 s. */
-export function settleCandidate(reference: SecondGrid, wearable: SecondGrid, coarseS: number): number {
-	const r = compared(reference.startS, reference.value);
-	const w = compared(wearable.startS, wearable.value);
-	let best = coarseS;
-	let loss = Infinity;
-	for (let s = Math.round(coarseS) - 4; s <= Math.round(coarseS) + 4; s++) {
-		const l = disagreement(r, w, s);
-		if (l < loss) {
-			loss = l;
-			best = s;
-		}
-	}
-	return best;
 }

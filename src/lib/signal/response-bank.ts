@@ -6,119 +6,8 @@
  * response; fitting it to the reference through the right smoother finds the sum of clock and delay. The smoother with
  * the least loss decides; its own delay is added back.
  */
-import type { SecondGrid } from './second-grid';
-import { smoothedSlope } from './slopes';
-
-export interface Smoother {
-	/** `none`, `first order 7 s`, `average 9 s`. */
-	name: string;
-	/** Mean delay of the discrete smoother, s. */
-	delayS: number;
-	apply(value: Float64Array): Float64Array;
-}
-
-function firstOrder(tauS: number): Smoother {
-	const keep = Math.exp(-1 / tauS);
-	return {
-		name: `first order ${tauS} s`,
-		delayS: 1 / (Math.exp(1 / tauS) - 1),
-		apply(value) {
-			const out = new Float64Array(value.length);
-			let y = NaN;
-			for (let i = 0; i < value.length; i++) {
-				const v = value[i];
-				if (Number.isNaN(v)) {
-					out[i] = NaN;
-					// After a gap the smoother's memory is of no use.
-					if (i > 0 && Number.isNaN(value[i - 1])) y = NaN;
-					continue;
-				}
-				y = Number.isNaN(y) ? v : keep * y + (1 - keep) * v;
-				out[i] = y;
-			}
-			return out;
-		}
-	};
-}
-
-function average(windowS: number): Smoother {
-	return {
-		name: `average ${windowS} s`,
-		delayS: (windowS - 1) / 2,
-		apply(value) {
-			const out = new Float64Array(value.length);
-			let sum = 0;
-			let count = 0;
-			for (let i = 0; i < value.length; i++) {
-				if (!Number.isNaN(value[i])) {
-					sum += value[i];
-					count++;
-				}
-				if (i >= windowS && !Number.isNaN(value[i - windowS])) {
-					sum -= value[i - windowS];
-					count--;
-				}
-				out[i] = !Number.isNaN(value[i]) && 2 * count > windowS ? sum / count : NaN;
-			}
-			return out;
-		}
-	};
-}
-
-export const NO_SMOOTHER: Smoother = { name: 'none', delayS: 0, apply: (value) => value };
-export const RESPONSE_BANK: readonly Smoother[] = [
-	NO_SMOOTHER,
-	...[2, 4, 7, 11, 15].map(firstOrder),
-	...[5, 9, 13, 18].map(average)
-];
-
-/** Bounded losses: half of the loss of a level is reached at 7 bpm, of a slope at 5 bpm. */
-const LEVEL_SQ = 49;
-const SLOPE_SQ = 25;
-
-/** A grid with its slopes, ready to be compared. */
-export interface Compared {
-	startS: number;
-	value: Float64Array;
-	slope: Float64Array;
-}
-
-export const compared = (startS: number, value: Float64Array): Compared => ({ startS, value, slope: smoothedSlope(value, 8, 10) });
-
-/**
- * Mean bounded disagreement when the wearable's stamps move by `shiftS`; linear between the reference's seconds.
- * @returns Infinity when fewer than 30 seconds can be compared
- */
-export function disagreement(reference: Compared, wearable: Compared, shiftS: number, from = 0, to = wearable.value.length): number {
-	const offset = wearable.startS + shiftS - reference.startS;
-	const whole = Math.floor(offset);
-	const part = offset - whole;
-	let level = 0;
-	let levels = 0;
-	let slope = 0;
-	let slopes = 0;
-	const first = Math.max(from, -whole);
-	const last = Math.min(to, reference.value.length - 1 - whole);
-	for (let i = first; i < last; i++) {
-		const k = i + whole;
-		const w = wearable.value[i];
-		const r = reference.value[k] * (1 - part) + reference.value[k + 1] * part;
-		const e = w - r;
-		if (e === e) {
-			const q = e * e;
-			level += q / (q + LEVEL_SQ);
-			levels++;
-		}
-		const g = wearable.slope[i] - (reference.slope[k] * (1 - part) + reference.slope[k + 1] * part);
-		if (g === g) {
-			const q = g * g;
-			slope += q / (q + SLOPE_SQ);
-			slopes++;
-		}
-	}
-	if (levels < 30) return Infinity;
-	return level / levels + (slopes > 0 ? slope / slopes : 1);
-}
+import { compared, disagreement, type Compared } from './disagreement';
+import { AVERAGE_BANK, FIRST_ORDER_BANK, NO_SMOOTHER, type Smoother } from './smoothers';
 
 export interface Refined {
 	/** Shift that puts the clocks together and forgives the device's delay, by the sum of delays, s. */
@@ -126,53 +15,112 @@ export interface Refined {
 	/** Shift of least disagreement with the bare reference, s. */
 	plainS: number;
 	loss: number;
+	/** The smoother that explains the wearable best, and the shift through it, s. */
 	smoother: Smoother;
+	throughSmootherS: number;
 	/** The least loss stood at the edge of what was looked at. */
 	atEdge: boolean;
 }
 
-/** Refines a coarse shift within ±6 s. */
-export function refine(reference: SecondGrid, wearable: SecondGrid, coarseS: number, bank: readonly Smoother[] = RESPONSE_BANK): Refined {
-	const w = compared(wearable.startS, wearable.value);
-	let best: { shiftS: number; loss: number; smoother: Smoother; atEdge: boolean } | null = null;
-	let plainS = coarseS;
-	for (const smoother of bank) {
-		const r = compared(reference.startS, smoother.apply(reference.value));
-		// Through a smoother the reference is later: the matching shift is larger by the smoother's delay.
-		const found = leastLoss(r, w, coarseS + 0.85 * smoother.delayS);
-		if (smoother === NO_SMOOTHER) plainS = found.shiftS;
-		if (!best || found.loss < best.loss) best = { ...found, smoother };
-	}
-	if (!best) return { totalS: coarseS, plainS, loss: Infinity, smoother: NO_SMOOTHER, atEdge: true };
-	return { totalS: best.shiftS - best.smoother.delayS, plainS, loss: best.loss, smoother: best.smoother, atEdge: best.atEdge };
+/** How far from the coarse shift the close search looks, s. */
+const REACH_S = 8;
+const FINE_STEP_S = 0.25;
+/** What the bank leaves of a smoothing device's delay: the mean over kinds of simulated devices with known delay. */
+const LEFT_BY_BANK_S = 0.05;
+
+interface Fit {
+	smoother: Smoother;
+	shiftS: number;
+	loss: number;
+	atEdge: boolean;
 }
 
-const REACH_S = 7;
+/**
+ * Refines a coarse shift.
+ * @param bare the reference as recorded
+ * @param w the wearable
+ * @param coarseS shift from the search over all overlaps, s
+ * @param every look at one second in this many only; for recordings of many hours
+ */
+export function refine(bare: Compared, w: Compared, coarseS: number, every = 1): Refined {
+	const nearest = leastWholeSecond(bare, w, Math.round(coarseS), REACH_S, every);
+	const none = descend(bare, w, nearest, every, NO_SMOOTHER);
+	const through = (smoother: Smoother): Fit => {
+		const r = compared(bare.startS, smoother.apply(bare.value));
+		// Through a smoother the reference is later: the matching shift is larger by most of the smoother's delay.
+		return descend(r, w, Math.round(none.shiftS + 0.85 * smoother.delayS), every, smoother);
+	};
+	const firstOrders = FIRST_ORDER_BANK.map(through);
+	const all = [none, ...firstOrders, ...AVERAGE_BANK.map(through)];
+	let best = none;
+	for (const fit of all) if (fit.loss < best.loss) best = fit;
+	return {
+		totalS: totalOf(best, firstOrders),
+		plainS: none.shiftS,
+		loss: best.loss,
+		smoother: best.smoother,
+		throughSmootherS: best.shiftS,
+		atEdge: Math.abs(nearest - Math.round(coarseS)) >= REACH_S || best.atEdge
+	};
+}
 
-function leastLoss(r: Compared, w: Compared, aroundS: number): { shiftS: number; loss: number; atEdge: boolean } {
-	const centre = Math.round(aroundS);
-	let shiftS = centre;
+/** The best fit's shift less its smoother's delay; among time constants, read between the best and its two neighbours. */
+function totalOf(best: Fit, firstOrders: Fit[]): number {
+	const at = ({ shiftS, smoother }: Fit) => (smoother === NO_SMOOTHER ? shiftS : shiftS - smoother.delayS - LEFT_BY_BANK_S);
+	const i = firstOrders.indexOf(best);
+	if (i < 1 || i === firstOrders.length - 1) return at(best);
+	const [a, b, c] = [firstOrders[i - 1], best, firstOrders[i + 1]];
+	const curve = a.loss - 2 * b.loss + c.loss;
+	if (!(curve > 0) || !Number.isFinite(curve)) return at(best);
+	const u = Math.max(-0.5, Math.min(0.5, (0.5 * (a.loss - c.loss)) / curve));
+	// The parabola through the three totals (Lagrange), at the place of the least loss.
+	return at(b) + (u * (at(c) - at(a))) / 2 + (u * u * (at(a) - 2 * at(b) + at(c))) / 2;
+}
+
+/** The whole second of least disagreement within `reachS` of `centre`. */
+export function leastWholeSecond(r: Compared, w: Compared, centre: number, reachS: number, every = 1): number {
+	let least = centre;
 	let loss = Infinity;
-	for (let s = centre - REACH_S; s <= centre + REACH_S; s++) {
-		const l = disagreement(r, w, s);
+	for (let s = centre - reachS; s <= centre + reachS; s++) {
+		const l = disagreement(r, w, s, every);
 		if (l < loss) {
 			loss = l;
-			shiftS = s;
+			least = s;
 		}
 	}
-	const atEdge = Math.abs(shiftS - centre) >= REACH_S;
-	const whole = shiftS;
-	for (let s = whole - 1.25; s <= whole + 1.26; s += 0.25) {
-		if (s === whole) continue;
-		const l = disagreement(r, w, s);
-		if (l < loss) {
-			loss = l;
-			shiftS = s;
+	return least;
+}
+
+/** Walks downhill by whole seconds, then by quarters; a parabola gives the rest. */
+function descend(r: Compared, w: Compared, start: number, every: number, smoother: Smoother): Fit {
+	const known = new Map<number, number>();
+	const lossAt = (s: number) => {
+		let l = known.get(s);
+		if (l === undefined) {
+			l = disagreement(r, w, s, every);
+			known.set(s, l);
 		}
+		return l;
+	};
+	let s = start;
+	for (const step of [1, FINE_STEP_S]) {
+		for (let moves = 0; moves < REACH_S; moves++) {
+			const here = lossAt(s);
+			const before = lossAt(s - step);
+			const after = lossAt(s + step);
+			if (before < here && before <= after) s -= step;
+			else if (after < here) s += step;
+			else break;
+		}
+		// The parabola of the whole seconds saves most of the quarter steps.
+		if (step === 1) s += Math.round(vertex(lossAt(s - 1), lossAt(s), lossAt(s + 1)) / FINE_STEP_S) * FINE_STEP_S;
 	}
-	const before = disagreement(r, w, shiftS - 0.25);
-	const after = disagreement(r, w, shiftS + 0.25);
-	const curve = before - 2 * loss + after;
-	if (curve > 0 && Number.isFinite(curve)) shiftS += Math.max(-0.125, Math.min(0.125, (0.125 * (before - after)) / curve));
-	return { shiftS, loss, atEdge };
+	const loss = lossAt(s);
+	return { smoother, shiftS: s + FINE_STEP_S * vertex(lossAt(s - FINE_STEP_S), loss, lossAt(s + FINE_STEP_S)), loss, atEdge: Math.abs(s - start) >= REACH_S };
+}
+
+/** Place of the least value of a parabola through three equally spaced ones, in steps from the middle; at most half a step. */
+function vertex(before: number, here: number, after: number): number {
+	const curve = before - 2 * here + after;
+	return curve > 0 && Number.isFinite(curve) ? Math.max(-0.5, Math.min(0.5, (0.5 * (before - after)) / curve)) : 0;
 }

@@ -68,21 +68,24 @@ export function heartRateGrid(trace: Pick<Trace, 'tS' | 'value'>): SecondGrid {
  */
 export function withoutWildPoints(value: Float64Array): Float64Array {
 	const out = value.slice();
-	const window: number[] = [];
 	for (let i = 0; i < value.length; i++) {
-		if (Number.isNaN(value[i])) continue;
+		const v = value[i];
+		if (v !== v) continue;
 		const half = Math.min(MEDIAN_HALF_S, i, value.length - 1 - i);
-		window.length = 0;
-		for (let j = i - half; j <= i + half; j++) if (!Number.isNaN(value[j])) window.push(value[j]);
-		if (window.length < 3) continue;
-		// A point is wild only if fewer than half of its neighbours are near it: cheaper than a median, and the same.
+		const high = v + WILD_BPM;
+		const low = v - WILD_BPM;
+		// The median is out of reach when more than half of the window stands beyond it on one side: no sorting needed.
+		let count = 0;
 		let above = 0;
 		let below = 0;
-		for (const v of window) {
-			if (v > value[i] + WILD_BPM) above++;
-			else if (v < value[i] - WILD_BPM) below++;
+		for (let j = i - half; j <= i + half; j++) {
+			const other = value[j];
+			if (other !== other) continue;
+			count++;
+			if (other > high) above++;
+			else if (other < low) below++;
 		}
-		if (2 * above > window.length || 2 * below > window.length) out[i] = NaN;
+		if (count >= 3 && (2 * above > count || 2 * below > count)) out[i] = NaN;
 	}
 	return out;
 }
