@@ -47,11 +47,6 @@ export function spanOnAxis(track: BenchTrack, place: ClockPlace): { fromS: numbe
 	return { fromS: onAxis(track.firstS, place, track.firstS), toS: onAxis(track.lastS, place, track.firstS) };
 }
 
-/** `1 Wrenna Loop 2`; the reference goes by its name alone. */
-export const numberedName = (track: Pick<BenchTrack, 'number' | 'name'>): string => (track.number === 0 ? track.name : `${track.number} ${track.name}`);
-export const numberedShortName = (track: Pick<BenchTrack, 'number' | 'shortName'>): string =>
-	track.number === 0 ? track.shortName : `${track.number} ${track.shortName}`;
-
 /** Share of a trace's readings at either end that may lie outside the frame: wild single values touch the edge instead of squeezing the rest. */
 const OUTSIDE_SHARE = 0.003;
 

@@ -1,7 +1,8 @@
 /** Tags on one lane: which are in view, where their words go, and which edge or tag stands under a pointer. */
-import { sideBlamed, treatmentOf, type AnalysisPlan } from '../../agreement';
+import type { AnalysisPlan } from '../../agreement';
 import type { TagKind } from '../../agreement/tag';
 import { onAxis, type Tag } from '../model';
+import { cleanedStanding } from '../tag-rules';
 import type { BenchTrack, ClockPlace } from './bench-track';
 import { timeX, type TimeFrame } from './time-frame';
 
@@ -40,11 +41,7 @@ export function leavesCleaned(
 	role: 'reference' | 'wearable',
 	plan: AnalysisPlan
 ): boolean {
-	if (tag.status !== 'accepted') return false;
-	const treatment = treatmentOf(plan, kind);
-	if (sideBlamed(kind, role) === 'reference' && (kind.blames !== 'reference' || treatment.primary === 'out')) return true;
-	if (kind.blames === 'reference' && role === 'wearable') return false;
-	return (tag.cleanedOverride ?? treatment.cleaned) === 'out';
+	return tag.status === 'accepted' && cleanedStanding(tag, kind, role, plan).out;
 }
 
 /** Tags of one recording that stand (proposed or accepted), on the axis, by start. */

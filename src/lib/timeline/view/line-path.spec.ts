@@ -55,6 +55,17 @@ describe('a drawn line', () => {
 		);
 	});
 
+	it('covers, as columns, the way from each reading to the next, and stays open across a gap', () => {
+		const columns: [number, number, number][] = [];
+		const sink = { moveTo() {}, lineTo() {}, column: (x: number, from: number, to: number) => columns.push([x, from, to]) };
+		const tS = Float64Array.from([...Array.from({ length: 300 }, (_, i) => i), ...Array.from({ length: 300 }, (_, i) => 900 + i)]);
+		const value = tS.map((t) => (t < 150 ? 60 : 160));
+		drawLine(sink, { tS, value, gapS: 3 }, { fromS: 0, toS: 1200, widthPx: 120 }, (v) => -v, still, 0);
+		expect(columns.find(([x]) => x === 15)).toEqual([15, -160, -60]);
+		expect(columns.some(([x]) => x > 30 && x < 89)).toBe(false);
+		expect(columns.find(([x]) => x === 90)).toEqual([90, -160, -160]);
+	});
+
 	it('keeps a long gap open when there are many readings a pixel', () => {
 		const tS = Float64Array.from([...Array.from({ length: 600 }, (_, i) => i), ...Array.from({ length: 600 }, (_, i) => 1200 + i)]);
 		const sink = new Strokes();

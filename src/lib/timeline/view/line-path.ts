@@ -9,6 +9,8 @@ import type { TimeFrame } from './time-frame';
 export interface PathSink {
 	moveTo(x: number, y: number): void;
 	lineTo(x: number, y: number): void;
+	/** Ink of one whole pixel column, joined to the one before or after a gap; a sink without it gets the column as a stroke. */
+	column?(x: number, fromY: number, toY: number, joined: boolean): void;
 }
 
 export interface LineSamples {
@@ -115,9 +117,17 @@ function drawColumns(
 	let highest = 0;
 	let last = 0;
 	let lastS = -Infinity;
+	let leftAt = 0;
 	let broken = true;
 	const put = () => {
 		if (Number.isNaN(column)) return;
+		if (sink.column) {
+			// Reaches to where the line left the column before, so that steep stretches stay one line.
+			sink.column(column, y(broken ? highest : Math.max(highest, leftAt)), y(broken ? lowest : Math.min(lowest, leftAt)), !broken);
+			leftAt = last;
+			broken = false;
+			return;
+		}
 		// From whichever end is nearer to where the line arrives, through the other, to where it leaves.
 		const at = column + 0.5;
 		if (broken) sink.moveTo(at, y(lowest));
@@ -157,6 +167,43 @@ export function valueAt({ tS, value, gapS }: LineSamples, ownS: number): number 
 	if (spanS > gapS) return null;
 	const between = value[after - 1] + ((value[after] - value[after - 1]) * (ownS - tS[after - 1])) / spanS;
 	return Number.isNaN(between) ? null : between;
+}
+
+/**
+ * A canvas path. Strokes and columns are apart: columns are filled as one shape between their upper and lower ends,
+ * which costs a fraction of a stroke with its joins. Call `finish` when the line is drawn.
+ */
+export class CanvasLine implements PathSink {
+	readonly stroke = new Path2D();
+	readonly fill = new Path2D();
+	private run: { x: number; fromY: number; toY: number }[] = [];
+	constructor(private readonly widthPx: number) {}
+	moveTo(x: number, y: number): void {
+		this.stroke.moveTo(x, y);
+	}
+	lineTo(x: number, y: number): void {
+		this.stroke.lineTo(x, y);
+	}
+	column(x: number, fromY: number, toY: number, joined: boolean): void {
+		if (!joined) this.finish();
+		const half = this.widthPx / 2;
+		this.run.push({ x: x + 0.5, fromY: fromY - half, toY: toY + half });
+	}
+	finish(): void {
+		const { run, fill, widthPx } = this;
+		if (run.length > 0) {
+			const first = run[0];
+			const last = run[run.length - 1];
+			fill.moveTo(first.x - widthPx / 2, first.toY);
+			fill.lineTo(first.x - widthPx / 2, first.fromY);
+			for (const { x, fromY } of run) fill.lineTo(x, fromY);
+			fill.lineTo(last.x + widthPx / 2, last.fromY);
+			fill.lineTo(last.x + widthPx / 2, last.toY);
+			for (let i = run.length - 1; i >= 0; i--) fill.lineTo(run[i].x, run[i].toY);
+			fill.closePath();
+		}
+		this.run = [];
+	}
 }
 
 /** Collects a line as the text of an SVG path, to a tenth of a pixel. */

@@ -1,7 +1,8 @@
 /** The plot in words: what a reader hears who does not see it, and sentences that say what is so when something is missing. */
 import type { ShiftEstimate } from '../../signal/shift';
 import { clockTime, duration, fixed, signed } from '../../text/figures';
-import { numberedName, spanOnAxis, type BenchTrack, type ClockPlace } from './bench-track';
+import { traceName } from '../words';
+import { spanOnAxis, type BenchTrack, type ClockPlace } from './bench-track';
 import { differenceLine, type CursorValue } from './difference';
 import { valueAt } from './line-path';
 import type { LaneTag } from './lane-layout';
@@ -43,11 +44,11 @@ export function summaryInWords(title: string, tracks: readonly BenchTrack[], pla
 		const toS = Math.max(...spans.map((s) => s.toS));
 		sentences.push(`${title}, ${clockTime(fromS)} to ${clockTime(toS)} UTC, ${duration(toS - fromS)}.`);
 	}
-	sentences.push(`${count(tracks.length, 'trace')}: ${tracks.map((t) => (t.role === 'reference' ? `${t.name} (reference)` : numberedName(t))).join(', ')}.`);
+	sentences.push(`${count(tracks.length, 'trace')}: ${tracks.map((t) => (t.role === 'reference' ? `${t.name} (reference)` : traceName(t))).join(', ')}.`);
 	for (const t of tracks) {
 		const gaps = gapsOf(t);
-		if (t.heartRate.tS.length === 0) sentences.push(`${numberedName(t)} holds no heart rate.`);
-		else if (gaps.count > 0) sentences.push(`${numberedName(t)} has ${count(gaps.count, 'gap')}, the longest ${duration(gaps.longestS)}.`);
+		if (t.heartRate.tS.length === 0) sentences.push(`${traceName(t)} holds no heart rate.`);
+		else if (gaps.count > 0) sentences.push(`${traceName(t)} has ${count(gaps.count, 'gap')}, the longest ${duration(gaps.longestS)}.`);
 	}
 	const tags = lanes.flat();
 	const proposed = tags.filter((t) => t.proposed).length;
@@ -114,8 +115,8 @@ export function obstacles(tracks: readonly BenchTrack[], placeOf: PlaceOf): stri
 	if (!reference) said.push('This session has no reference, so nothing can be aligned or compared. Bring in the strap’s file of the same time; tags can be set meanwhile.');
 	if (wearables.length === 0) said.push('This session holds the reference alone. Bring in the files of the wearables worn with it.');
 	for (const t of tracks) {
-		if (t.heartRate.tS.length === 0) said.push(`${numberedName(t)} holds no heart rate.`);
-		else if (t.heartRate.tS.length === 1) said.push(`${numberedName(t)} holds one single reading: no offset can be found from it.`);
+		if (t.heartRate.tS.length === 0) said.push(`${traceName(t)} holds no heart rate.`);
+		else if (t.heartRate.tS.length === 1) said.push(`${traceName(t)} holds one single reading: no offset can be found from it.`);
 	}
 	const at = reference && spanOnAxis(reference, placeOf(reference.recordingId));
 	if (reference && at) {
@@ -126,7 +127,7 @@ export function obstacles(tracks: readonly BenchTrack[], placeOf: PlaceOf): stri
 			if (apartS === null) continue;
 			const where = span.fromS > at.toS ? 'begins' : 'ends';
 			const side = span.fromS > at.toS ? 'after the reference ends' : 'before the reference begins';
-			said.push(`${numberedName(t)} ${where} ${duration(Math.max(1, apartS))} ${side}, at its offset of ${signed(placeOf(t.recordingId).offsetS, 2)} s. Choose another candidate on the offset rule, or check that the file belongs here.`);
+			said.push(`${traceName(t)} ${where} ${duration(Math.max(1, apartS))} ${side}, at its offset of ${signed(placeOf(t.recordingId).offsetS, 2)} s. Choose another candidate on the offset rule, or check that the file belongs here.`);
 		}
 	}
 	return said;

@@ -2,7 +2,7 @@ import { describe, expect, it } from 'vitest';
 import { DEFAULT_TAG_KINDS } from '../../agreement';
 import type { BenchTrack } from './bench-track';
 import type { LaneTag } from './lane-layout';
-import { cursorInWords, obstacles, offsetInWords, summaryInWords, tableOf, trustInWords } from './words';
+import { cursorInWords, obstacles, offsetInWords, summaryInWords, tableOf, trustInWords } from './plot-in-words';
 
 const T0 = Date.UTC(2025, 9, 14, 7, 51, 0) / 1000;
 function track(number: number, shortName: string, startS: number, values: number[]): BenchTrack {
