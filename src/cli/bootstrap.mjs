@@ -9,7 +9,7 @@ import { dirname, join } from 'node:path';
 import { fileURLToPath, pathToFileURL } from 'node:url';
 
 const root = join(dirname(fileURLToPath(import.meta.url)), '..', '..');
-const COMMANDS = ['start', 'test', 'bench', 'nonius', 'database', 'sample-files', 'fuzz'];
+const COMMANDS = ['start', 'test', 'bench', 'nonius', 'database', 'fuzz'];
 
 const [command, ...args] = process.argv.slice(2);
 if (!COMMANDS.includes(command)) fail(`Unknown command "${command ?? ''}". Known: ${COMMANDS.join(', ')}.`);

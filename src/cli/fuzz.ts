@@ -153,3 +153,6 @@ if (process.env.NONIUS_FUZZ_CHILD === '1' && process.send) {
 	runChild(process.argv.slice(2));
 	process.disconnect();
 }
+
+/** Entry of `npm run fuzz`. */
+export const main = fuzz;
