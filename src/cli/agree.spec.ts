@@ -107,6 +107,11 @@ describe('nonius agree', () => {
 		expect(await agree([table, '--by', 'activity', '--cluster', 'participant,session', '--plan', plan])).toBe(0);
 		const [line] = lines();
 		expect(line).toMatchObject({ participants: 3, sessions: 6, equivalence: { marginBpm: 12, equivalent: true } });
+		expect(line.bootstrap).toMatchObject({
+			resamples: 10_000,
+			seed: 1,
+			bias: { percentile: [expect.any(Number), expect.any(Number)] }
+		});
 		expect(line.strata.map((s: { by: object; n: number }) => [s.by, s.n])).toEqual([
 			[{ activity: 'run' }, 6],
 			[{ activity: 'row' }, 6]

@@ -7,17 +7,18 @@
  */
 import { readFile } from 'node:fs/promises';
 import { parseArgs } from 'node:util';
+import { bootstrapFigures } from '../lib/agreement/bootstrap';
 import { reasonOrNull, valueOrNull } from '../lib/agreement/determinable';
 import { agreementFigures, type Figures } from '../lib/agreement/figures';
 import { DEFAULT_PLAN, validatePlan, type AnalysisPlan } from '../lib/agreement/plan';
 import { readPairsCsv, type ReadGroup } from '../lib/agreement/pairs-csv';
-import type { ClusterLevel } from '../lib/agreement/sessions';
+import { sumSession, type ClusterLevel, type SessionSums } from '../lib/agreement/sessions';
 
 const USAGE = `nonius agree PAIRS.csv… [--by activity,device] [--cluster participant,session] [--plan plan.json] [--analysis primary|cleaned]
 
 PAIRS.csv   columns session, reference, wearable, in any order, among others
 --by        columns that split the figures, each value a row of "strata"
---cluster   what is independent: session (default), or participant,session
+--cluster   what is independent: session (default), or participant,session; named, bootstrap intervals are added
 --plan      analysis plan as JSON; what it leaves out takes the default
 --analysis  count only the rows that the column in_primary or in_cleaned marks with 1
 `;
@@ -28,6 +29,8 @@ interface Choices {
 	cluster: ClusterLevel;
 	plan: AnalysisPlan;
 	analysis: 'primary' | 'cleaned' | null;
+	/** Resampled intervals are asked for by naming what is independent. */
+	resample: boolean;
 }
 
 /**
@@ -93,7 +96,8 @@ async function choicesFrom(args: string[]): Promise<Choices | string> {
 		by: names(values.by),
 		cluster: cluster.startsWith('participant') ? 'participant' : 'session',
 		plan,
-		analysis: analysis ?? null
+		analysis: analysis ?? null,
+		resample: cluster !== ''
 	};
 }
 
@@ -112,7 +116,10 @@ async function readPlan(path: string): Promise<AnalysisPlan | string> {
 		: [`The plan ${path} cannot be used:`, ...result.problems.map((p) => `  ${p.path}: ${p.message}`)].join('\n');
 }
 
-async function agreeOnFile(file: string, { by, cluster, plan, analysis }: Choices): Promise<Record<string, unknown>> {
+async function agreeOnFile(
+	file: string,
+	{ by, cluster, plan, analysis, resample }: Choices
+): Promise<Record<string, unknown>> {
 	let text: string;
 	try {
 		text = decode(await readFile(file));
@@ -137,6 +144,7 @@ async function agreeOnFile(file: string, { by, cluster, plan, analysis }: Choice
 	return {
 		file,
 		...jsonFigures(figures),
+		...(resample ? { bootstrap: jsonBootstrap(read.groups.map(sumSession), cluster, plan) } : {}),
 		...(by.length
 			? {
 					strata: strataOf(read.groups, by).map(({ values, groups }) => ({
@@ -160,6 +168,16 @@ function strataOf(groups: ReadGroup[], by: string[]): { values: Record<string, s
 		values: Object.fromEntries(by.map((name, i) => [name, same[0].stratum[i]])),
 		groups: same
 	}));
+}
+
+/** Percentile and BCa intervals of the cluster bootstrap; null where there are none. */
+function jsonBootstrap(sessions: SessionSums[], cluster: ClusterLevel, plan: AnalysisPlan): Record<string, unknown> {
+	const { resamples, seed } = plan;
+	const intervals = Object.entries(bootstrapFigures(sessions, { resamples, seed, cluster })).map(([figure, result]) => [
+		figure,
+		'notDeterminable' in result ? null : { percentile: result.percentile, bca: result.bca }
+	]);
+	return { resamples, seed, ...Object.fromEntries(intervals) };
 }
 
 /** Figures as the stable JSON fields: what is not determinable is null. */

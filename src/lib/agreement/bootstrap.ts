@@ -5,7 +5,7 @@
 import { ONE_CLUSTER } from './cluster-mean';
 import { normalCdf, normalQuantile } from './distributions';
 import { notDeterminable, type Interval, type NotDeterminable } from './determinable';
-import { sfc32 } from './random';
+import { Sfc32 } from './random';
 import { joinSessions, sessionsByParticipant, type ClusterLevel, type SessionSums } from './sessions';
 import { leaveOneOut, mergeMoments, type PairMoments } from './sums';
 
@@ -75,7 +75,7 @@ export function bootstrapFigures(
 		columns.length,
 		groups.map((g) => g.length),
 		resamples,
-		sfc32(seed)
+		new Sfc32(seed)
 	);
 	const seen = columnTotals(table, columns.length);
 	const withoutOne = leaveOneOut(groups.map((g) => mergeMoments(g.map((s) => s.sums))));
@@ -136,7 +136,7 @@ function drawTotals(
 	width: number,
 	sizes: readonly number[],
 	resamples: number,
-	next: () => number
+	generator: Sfc32
 ): Float64Array {
 	const totals = new Float64Array(resamples * width);
 	const flat = sizes.every((size) => size === 1);
@@ -144,93 +144,109 @@ function drawTotals(
 	const starts = new Int32Array(k);
 	for (let g = 1; g < k; g++) starts[g] = starts[g - 1] + sizes[g - 1];
 	const count = table.length / width;
-	const times = new Int32Array(count);
-	const draw = boundedDraw(next);
+	// Column by column, so that a sweep reads straight ahead.
+	const columns = Array.from({ length: width }, (_, j) =>
+		Float64Array.from({ length: count }, (__, i) => table[i * width + j])
+	);
+	const times = new Float64Array(count);
+	const draw = new BoundedDraw(generator);
 	for (let r = 0; r < resamples; r++) {
 		times.fill(0);
-		if (flat) draw.countInto(times, k, k);
+		if (flat) draw.countInto(times, k);
 		else {
 			for (let i = 0; i < k; i++) {
 				const g = draw.below(k);
 				for (let j = 0; j < sizes[g]; j++) times[starts[g] + draw.below(sizes[g])]++;
 			}
 		}
-		addRows(table, width, times, totals, r * width);
+		addRows(columns, times, totals, r * width);
 	}
 	return totals;
 }
 
-function addRows(table: Float64Array, width: number, times: Int32Array, totals: Float64Array, at: number): void {
-	// Two columns a sweep: the sums stay in registers and the counts are read half as often.
+function addRows(columns: readonly Float64Array[], times: Float64Array, totals: Float64Array, at: number): void {
+	// Three columns a sweep: their sums stay in registers and each count is read once for the three.
 	let j = 0;
-	for (; j + 1 < width; j += 2) {
+	for (; j + 2 < columns.length; j += 3) {
+		const [one, two, three] = [columns[j], columns[j + 1], columns[j + 2]];
 		let first = 0;
 		let second = 0;
-		for (let i = 0, cell = j; i < times.length; i++, cell += width) {
+		let third = 0;
+		for (let i = 0; i < times.length; i++) {
 			const t = times[i];
-			first += t * table[cell];
-			second += t * table[cell + 1];
+			first += t * one[i];
+			second += t * two[i];
+			third += t * three[i];
 		}
 		totals[at + j] = first;
 		totals[at + j + 1] = second;
+		totals[at + j + 2] = third;
 	}
-	if (j < width) {
+	for (; j < columns.length; j++) {
+		const column = columns[j];
 		let sum = 0;
-		for (let i = 0, cell = j; i < times.length; i++, cell += width) sum += times[i] * table[cell];
+		for (let i = 0; i < times.length; i++) sum += times[i] * column[i];
 		totals[at + j] = sum;
 	}
 }
 
-/** Whole numbers below a bound, every one equally likely (Lemire D 2019, multiply and reject), two from one 32-bit draw. */
-function boundedDraw(next: () => number) {
-	let spare = -1;
-	const half = () => {
-		if (spare >= 0) {
-			const kept = spare;
-			spare = -1;
-			return kept;
-		}
-		const bits = next();
-		spare = bits >>> 16;
-		return bits & 0xffff;
-	};
-	const wide = (bound: number) => {
-		const limit = 4294967296 - (4294967296 % bound);
-		let bits = next();
-		while (bits >= limit) bits = next();
-		return bits % bound;
-	};
-	const narrow = (bound: number) => {
+/** Largest bound for which sixteen bits are drawn; above, whole words are. */
+const NARROW = 4096;
+
+/** Whole numbers below a bound, every one equally likely (Lemire D 2019, multiply and reject), two from one word. */
+class BoundedDraw {
+	private readonly words = new Uint32Array(2048);
+	private readonly halves = new Uint16Array(this.words.buffer);
+	private used = this.halves.length;
+
+	constructor(private readonly generator: Sfc32) {}
+
+	private refill(): void {
+		this.generator.fill(this.words);
+		this.used = 0;
+	}
+
+	below(bound: number): number {
+		if (bound > NARROW) return this.wideBelow(bound);
 		const reject = 65536 % bound;
-		let product = half() * bound;
-		while ((product & 0xffff) < reject) product = half() * bound;
-		return product >>> 16;
-	};
-	return {
-		below: (bound: number) => (bound <= 4096 ? narrow(bound) : wide(bound)),
-		/** Count `draws` numbers below `bound`. */
-		countInto(times: Int32Array, bound: number, draws: number): void {
-			if (bound > 4096) {
-				for (let i = 0; i < draws; i++) times[wide(bound)]++;
-				return;
-			}
-			const reject = 65536 % bound;
-			let left = draws;
-			while (left > 0) {
-				const bits = next();
-				const low = (bits & 0xffff) * bound;
-				if ((low & 0xffff) >= reject) {
-					times[low >>> 16]++;
-					left--;
-				}
-				const high = (bits >>> 16) * bound;
-				if (left > 0 && (high & 0xffff) >= reject) {
-					times[high >>> 16]++;
-					left--;
-				}
-			}
+		for (;;) {
+			if (this.used >= this.halves.length) this.refill();
+			const product = this.halves[this.used++] * bound;
+			if ((product & 0xffff) >= reject) return product >>> 16;
 		}
-	};
+	}
+
+	private wideBelow(bound: number): number {
+		const limit = 4294967296 - (4294967296 % bound);
+		for (;;) {
+			if (this.used + 1 >= this.halves.length) this.refill();
+			const word = this.words[(this.used + 1) >>> 1];
+			this.used = (((this.used + 1) >>> 1) + 1) * 2;
+			if (word < limit) return word % bound;
+		}
+	}
+
+	/** Draw as many numbers below `bound` as there are, and count how often each came. */
+	countInto(times: Float64Array, bound: number): void {
+		if (bound > NARROW) {
+			for (let i = 0; i < bound; i++) times[this.wideBelow(bound)]++;
+			return;
+		}
+		const reject = 65536 % bound;
+		const { halves } = this;
+		let left = bound;
+		while (left > 0) {
+			if (this.used >= halves.length) this.refill();
+			let at = this.used;
+			for (; at < halves.length && left > 0; at++) {
+				const product = halves[at] * bound;
+				if ((product & 0xffff) < reject) continue;
+				times[product >>> 16]++;
+				left--;
+			}
+			this.used = at;
+		}
+	}
 }
 
 /** The figure from one row of totals. */

@@ -241,16 +241,21 @@ export function mergeMoments(sets: readonly PairMoments[]): PairMoments {
  * the work grows with the number of sets and no digits are lost by taking one away.
  */
 export function leaveOneOut(sets: readonly PairMoments[]): PairMoments[] {
+	const joined = (a: PairMoments, b: PairMoments): PairMoments => {
+		const both = { ...a };
+		addMoments(both, b);
+		return both;
+	};
 	const after: PairMoments[] = [];
 	let tail = emptyMoments();
 	for (let i = sets.length - 1; i >= 0; i--) {
 		after[i] = tail;
-		tail = mergeMoments([sets[i], tail]);
+		tail = joined(tail, sets[i]);
 	}
 	let before = emptyMoments();
 	return sets.map((set, i) => {
-		const rest = mergeMoments([before, after[i]]);
-		before = mergeMoments([before, set]);
+		const rest = joined(before, after[i]);
+		before = joined(before, set);
 		return rest;
 	});
 }
