@@ -100,7 +100,7 @@ export async function fuzz(args: string[]): Promise<number> {
 		return 2;
 	}
 	return new Promise((resolve) => {
-		const child = fork(fileURLToPath(import.meta.url), args, { env: { ...process.env, NONIUS_FUZZ_CHILD: '1' } });
+		const child = fork(fileURLToPath(import.meta.url), args, { env: { ...process.env, NONIUS_FUZZ_CHILD: '1' }, execArgv: ['--import', 'tsx', ...process.execArgv.filter((a) => !a.includes('tsx'))] });
 		let last = -1;
 		let timer: NodeJS.Timeout | undefined;
 		const watch = () => {
