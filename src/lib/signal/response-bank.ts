@@ -15,9 +15,10 @@ export interface Refined {
 	/** Shift of least disagreement with the bare reference, s. */
 	plainS: number;
 	loss: number;
-	/** The smoother that explains the wearable best, and the shift through it, s. */
+	/** The smoother that explains the wearable best. */
 	smoother: Smoother;
-	throughSmootherS: number;
+	/** Every smoother's own best: no smoothing, time constants in order, averages in order. */
+	fits: Fit[];
 	/** The least loss stood at the edge of what was looked at. */
 	atEdge: boolean;
 }
@@ -28,8 +29,11 @@ const FINE_STEP_S = 0.25;
 /** What the bank leaves of a smoothing device's delay: the mean over kinds of simulated devices with known delay. */
 const LEFT_BY_BANK_S = 0.05;
 
-interface Fit {
+export interface Fit {
 	smoother: Smoother;
+	/** The reference through the smoother. */
+	reference: Compared;
+	/** Shift of least disagreement through it, s. */
 	shiftS: number;
 	loss: number;
 	atEdge: boolean;
@@ -50,30 +54,37 @@ export function refine(bare: Compared, w: Compared, coarseS: number, every = 1):
 		// Through a smoother the reference is later: the matching shift is larger by most of the smoother's delay.
 		return descend(r, w, Math.round(none.shiftS + 0.85 * smoother.delayS), every, smoother);
 	};
-	const firstOrders = FIRST_ORDER_BANK.map(through);
-	const all = [none, ...firstOrders, ...AVERAGE_BANK.map(through)];
-	let best = none;
-	for (const fit of all) if (fit.loss < best.loss) best = fit;
+	const fits = [none, ...FIRST_ORDER_BANK.map(through), ...AVERAGE_BANK.map(through)];
+	let best = 0;
+	for (let k = 1; k < fits.length; k++) if (fits[k].loss < fits[best].loss) best = k;
 	return {
-		totalS: totalOf(best, firstOrders),
+		totalS: totalOf(best, fits.map((fit) => fit.shiftS), fits.map((fit) => fit.loss)),
 		plainS: none.shiftS,
-		loss: best.loss,
-		smoother: best.smoother,
-		throughSmootherS: best.shiftS,
-		atEdge: Math.abs(nearest - Math.round(coarseS)) >= REACH_S || best.atEdge
+		loss: fits[best].loss,
+		smoother: fits[best].smoother,
+		fits,
+		atEdge: Math.abs(nearest - Math.round(coarseS)) >= REACH_S || fits[best].atEdge
 	};
 }
 
-/** The best fit's shift less its smoother's delay; among time constants, read between the best and its two neighbours. */
-function totalOf(best: Fit, firstOrders: Fit[]): number {
-	const at = ({ shiftS, smoother }: Fit) => (smoother === NO_SMOOTHER ? shiftS : shiftS - smoother.delayS - LEFT_BY_BANK_S);
-	const i = firstOrders.indexOf(best);
-	if (i < 1 || i === firstOrders.length - 1) return at(best);
-	const [a, b, c] = [firstOrders[i - 1], best, firstOrders[i + 1]];
-	const curve = a.loss - 2 * b.loss + c.loss;
-	if (!(curve > 0) || !Number.isFinite(curve)) return at(best);
-	const u = Math.max(-0.5, Math.min(0.5, (0.5 * (a.loss - c.loss)) / curve));
-	// The parabola through the three totals (Lagrange), at the place of the least loss.
+/** Delays of the bank in the order of `Refined.fits`, with what it leaves. */
+const DELAY_S = [0, ...[...FIRST_ORDER_BANK, ...AVERAGE_BANK].map((smoother) => smoother.delayS + LEFT_BY_BANK_S)];
+
+/**
+ * Total shift of the bank's best member: its shift less its delay; among time constants, read between the best and
+ * its two neighbours at the least of the parabola through their losses.
+ * @param best its place in the bank
+ * @param shiftsS shift through each member, s
+ * @param losses disagreement of each member
+ */
+export function totalOf(best: number, shiftsS: ArrayLike<number>, losses: ArrayLike<number>): number {
+	const at = (k: number) => shiftsS[k] - DELAY_S[k];
+	// 0 is the bare reference; the time constants stand at 1 to their number.
+	if (best < 2 || best >= FIRST_ORDER_BANK.length) return at(best);
+	const [a, b, c] = [best - 1, best, best + 1];
+	const curve = losses[a] - 2 * losses[b] + losses[c];
+	if (!(curve > 0) || !Number.isFinite(curve)) return at(b);
+	const u = Math.max(-0.5, Math.min(0.5, (0.5 * (losses[a] - losses[c])) / curve));
 	return at(b) + (u * (at(c) - at(a))) / 2 + (u * u * (at(a) - 2 * at(b) + at(c))) / 2;
 }
 
@@ -116,7 +127,7 @@ function descend(r: Compared, w: Compared, start: number, every: number, smoothe
 		if (step === 1) s += Math.round(vertex(lossAt(s - 1), lossAt(s), lossAt(s + 1)) / FINE_STEP_S) * FINE_STEP_S;
 	}
 	const loss = lossAt(s);
-	return { smoother, shiftS: s + FINE_STEP_S * vertex(lossAt(s - FINE_STEP_S), loss, lossAt(s + FINE_STEP_S)), loss, atEdge: Math.abs(s - start) >= REACH_S };
+	return { smoother, reference: r, shiftS: s + FINE_STEP_S * vertex(lossAt(s - FINE_STEP_S), loss, lossAt(s + FINE_STEP_S)), loss, atEdge: Math.abs(s - start) >= REACH_S };
 }
 
 /** Place of the least value of a parabola through three equally spaced ones, in steps from the middle; at most half a step. */
