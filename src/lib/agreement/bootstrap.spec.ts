@@ -83,6 +83,12 @@ describe('cluster bootstrap', () => {
 			expect(Math.abs(p[0] - b[0])).toBeLessThan(0.5 * (p[1] - p[0]));
 		}
 	});
+	it('asking for fewer figures changes none of them', () => {
+		const all = found(bootstrapFigures(sessions, { resamples: 500, seed: 6 }).mae);
+		const one = found(bootstrapFigures(sessions, { resamples: 500, seed: 6, figures: ['mae'] }).mae);
+		for (const kind of ['percentile', 'bca'] as const)
+			for (const side of [0, 1]) expect(one[kind][side]).toBeCloseTo(all[kind][side], 10);
+	});
 	it('people who differ make the interval wider than their sessions alone would', () => {
 		const bySession = found(bootstrapFigures(sessions, { resamples: 2000, seed: 1, figures: ['bias'] }).bias);
 		const byPerson = found(

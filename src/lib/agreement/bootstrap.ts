@@ -150,6 +150,12 @@ function drawTotals(
 	);
 	const times = new Float64Array(count);
 	const draw = new BoundedDraw(generator);
+	if (flat && width <= 4 && k <= NARROW) {
+		const rows = new Float64Array(count * 4);
+		columns.forEach((column, j) => column.forEach((value, i) => (rows[i * 4 + j] = value)));
+		for (let r = 0; r < resamples; r++) draw.addInto(rows, k, totals, r * width, width);
+		return totals;
+	}
 	for (let r = 0; r < resamples; r++) {
 		times.fill(0);
 		if (flat) draw.countInto(times, k);
@@ -224,6 +230,37 @@ class BoundedDraw {
 			this.used = (((this.used + 1) >>> 1) + 1) * 2;
 			if (word < limit) return word % bound;
 		}
+	}
+
+	/**
+	 * Draw as many rows as there are and add them up at once; for few columns cheaper than counting first. Rows are four
+	 * columns wide, unused ones 0. The same draws as `countInto`.
+	 */
+	addInto(rows: Float64Array, bound: number, totals: Float64Array, at: number, width: number): void {
+		const reject = 65536 % bound;
+		const { halves } = this;
+		let first = 0;
+		let second = 0;
+		let third = 0;
+		let fourth = 0;
+		let left = bound;
+		while (left > 0) {
+			if (this.used >= halves.length) this.refill();
+			let next = this.used;
+			for (; next < halves.length && left > 0; next++) {
+				const product = halves[next] * bound;
+				if ((product & 0xffff) < reject) continue;
+				const row = (product >>> 16) << 2;
+				first += rows[row];
+				second += rows[row + 1];
+				third += rows[row + 2];
+				fourth += rows[row + 3];
+				left--;
+			}
+			this.used = next;
+		}
+		const sums = [first, second, third, fourth];
+		for (let j = 0; j < width; j++) totals[at + j] = sums[j];
 	}
 
 	/** Draw as many numbers below `bound` as there are, and count how often each came. */
