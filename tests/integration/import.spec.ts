@@ -84,8 +84,8 @@ describe('several files at once', () => {
 		const later = sessionFiles({ seed: 2, startS: Date.UTC(2026, 9, 14, 12, 0) / 1000 });
 		await bring([later.strap]);
 		const { sessions: found } = await board();
-		expect(found.map((s) => s.code)).toEqual(['S01', 'S02']);
-		expect(found[1].files[0].message).toBe('S02 was opened for it; nothing else overlapped it by half of the shorter one.');
+		expect(found.map((s) => s.code)).toEqual(['S02', 'S01']);
+		expect(found[0].files[0].message).toBe('S02 was opened for it; nothing else overlapped it by half of the shorter one.');
 	});
 
 	it('keep a unit per serial number and firmware', async () => {
@@ -123,7 +123,7 @@ describe('which device made this file', () => {
 		const band = (await board()).sessions[0].files.find((f) => f.uploadId === receipts[2].uploadId);
 		expect(band?.recording?.deviceModelId).toBe(house.models[1]);
 		await bring([sessionFiles({ seed: 6, startS: Date.UTC(2026, 9, 20, 7, 0) / 1000 }).band]);
-		expect((await board()).sessions[1].files[0].recording?.deviceModelId).toBe(house.models[1]);
+		expect((await board()).sessions[0].files[0].recording?.deviceModelId).toBe(house.models[1]);
 	});
 });
 
@@ -333,7 +333,7 @@ describe('who may', () => {
 		const [watch] = await bring([files.watch], house.contributor);
 		await answer(watch.uploadId, 2, house.contributor);
 		await bring([sessionFiles({ seed: 6, startS: Date.UTC(2026, 9, 19, 7, 0) / 1000 }).watch]);
-		const newest = (await board()).sessions.at(-1);
-		expect(newest?.files[0].recording?.deviceModelId).toBe(house.models[1]);
+		const [newest] = (await board()).sessions;
+		expect(newest.files[0].recording?.deviceModelId).toBe(house.models[1]);
 	});
 });

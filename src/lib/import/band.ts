@@ -73,9 +73,27 @@ export function dayOf(epochS: number): string {
 	return new Date(epochS * 1000).toLocaleDateString('en-GB', { day: 'numeric', month: 'short', timeZone: 'UTC' });
 }
 
-/** `Offset +3.42 s`, or that it is not known yet. */
-export function offsetWords(file: BoardFile, hasReference: boolean): string {
+/** The offset in a row: the figure where it stands, `unclear` where it does not, `…` while it is searched. */
+export function offsetOf(file: BoardFile, hasReference: boolean): string | null {
 	const offset = file.recording?.offset;
-	if (!offset) return hasReference ? 'offset being searched' : 'no reference yet';
-	return offset.stands ? `offset ${signed(offset.offsetS, 2)} s` : 'offset not determinable';
+	if (!offset) return hasReference ? '…' : null;
+	return offset.stands ? `${signed(offset.offsetS, 2)} s` : 'unclear';
+}
+
+/** Warnings that the row itself says; all of them stand in the file's panel. */
+const REMARK: Record<string, string> = {
+	'missing-tail': 'stops early',
+	unfinished: 'stops early',
+	'message-cut': 'stops early',
+	'no-time-zone': 'no zone',
+	'clock-jump': 'clock jumps',
+	'backward-step': 'clock steps back',
+	'second-heart-rate-source': 'two heart rates',
+	'heart-rate-twice': 'two heart rates',
+	renamed: 'renamed'
+};
+
+export function remarkOf(file: BoardFile): string | null {
+	const codes = file.recording?.warnings.map((w) => w.code) ?? [];
+	return codes.map((code) => REMARK[code]).find((word) => word !== undefined) ?? null;
 }

@@ -57,7 +57,7 @@ export interface ImportBoard {
 	devices: BoardDevice[];
 	participants: { participantId: string; code: string }[];
 	activities: string[];
-	/** In order of time. */
+	/** Newest first: what was just dropped stands on top. */
 	sessions: BoardSession[];
 	/** Files on their way in, or asking, that are in no session yet. */
 	loose: BoardFile[];

@@ -3,6 +3,7 @@ import { createQuery } from '@tanstack/svelte-query';
 import type { BoardFile, BoardSession, ImportBoard } from './board';
 import { FileSender, problemSentence } from './file-sender.svelte';
 import type { Outline } from './outline';
+import { offsetsSearched } from './questions';
 
 /** While something is under way; else colleagues' uploads are looked for now and then. */
 const BUSY_MS = 700;
@@ -119,8 +120,7 @@ export class ImportPage {
 	}
 
 	private interval(board: ImportBoard): number {
-		const searching = board.sessions.some((s) => s.hasReference && s.files.some((f) => f.recording?.offset === null && this.deviceOf(f)?.role === 'wearable'));
-		if (board.underWay === 0 && !searching) return QUIET_MS;
+		if (board.underWay === 0 && !offsetsSearched(board)) return QUIET_MS;
 		return Date.now() - this.lastChange > PATIENCE_MS ? PATIENT_MS : BUSY_MS;
 	}
 

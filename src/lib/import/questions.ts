@@ -21,6 +21,12 @@ export function openQuestions(board: ImportBoard): OpenQuestion[] {
 	return [...devices, ...placing, ...withoutReference];
 }
 
+/** Is there a wearable beside its reference whose offset is not known yet? */
+export function offsetsSearched(board: ImportBoard): boolean {
+	const wearables = new Set(board.devices.filter((d) => d.role === 'wearable').map((d) => d.modelId));
+	return board.sessions.some((s) => s.hasReference && s.files.some((f) => f.recording?.offset === null && wearables.has(f.recording.deviceModelId ?? '')));
+}
+
 /** Files by where they stand, for the sentence and the ruler. */
 export function tally(board: ImportBoard): { ready: number; ask: number; out: number } {
 	const files = [...board.loose, ...board.sessions.flatMap((s) => s.files)];

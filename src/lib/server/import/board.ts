@@ -76,7 +76,7 @@ async function shownSessions(db: Queryable, actor: Actor, studyId: string, ownOn
 		.limit(MOST_SESSIONS);
 	return newest
 		.map(({ startsAt, endsAt, ...s }) => ({ ...s, startS: startsAt.getTime() / 1000, endS: endsAt.getTime() / 1000 }))
-		.sort((a, b) => a.startS - b.startS || a.code.localeCompare(b.code));
+		.sort((a, b) => b.startS - a.startS || a.code.localeCompare(b.code));
 }
 
 async function countShownSessions(db: Queryable, actor: Actor, studyId: string, ownOnly: boolean): Promise<number> {
