@@ -14,20 +14,35 @@ import type { SecondGrid } from './second-grid';
 import type { ShiftCandidate } from './shift';
 import { clipped, smoothedSlope } from './slopes';
 
+/** A smoothed slope and how far it counts: mean over ±half between reach seconds after and before, at most ±limit. */
+export interface SlopeSpec {
+	halfS: number;
+	reachS: number;
+	limit: number;
+}
+
 export interface CoarseOptions {
-	/** Grid step of the search, s. */
-	stepS: number;
 	/** Width of the agreement kernel, in units of the trace. */
 	sigma: number;
-	/** Period of the cosine series: differences of a whole period look like none. */
+	/** Period of the cosine series: differences of a whole period look like none. A power of two. */
 	period: number;
 	/** Weight of level agreement against the two slope correlations. */
 	levelWeight: number;
-	/** Limits of the two slopes: ±8 s means 10 s to either side, and ±5 s means 6 s to either side. */
-	slopeLimits: [number, number];
+	slopes: readonly [SlopeSpec, SlopeSpec];
 }
 
-export const HEART_RATE_SEARCH: CoarseOptions = { stepS: 2, sigma: 5, period: 128, levelWeight: 6, slopeLimits: [2, 2.5] };
+export const HEART_RATE_SEARCH: CoarseOptions = {
+	sigma: 5,
+	period: 128,
+	levelWeight: 6,
+	slopes: [
+		{ halfS: 8, reachS: 10, limit: 2 },
+		{ halfS: 5, reachS: 6, limit: 2.5 }
+	]
+};
+
+/** Both traces together longer than this are searched on every fourth second instead of every second one, s. */
+const LONG_S = 16 * 3600;
 
 export interface CoarseResult {
 	/** Score at each lag; shift of lag k is `firstShiftS + k * stepS`. */
@@ -38,7 +53,8 @@ export interface CoarseResult {
 
 /** Score of every shift at which the two traces overlap at all. */
 export function coarseSearch(reference: SecondGrid, wearable: SecondGrid, options: CoarseOptions = HEART_RATE_SEARCH): CoarseResult {
-	const { stepS, sigma, period, levelWeight, slopeLimits } = options;
+	const { sigma, period, levelWeight, slopes } = options;
+	const stepS = reference.value.length + wearable.value.length > LONG_S ? 4 : 2;
 	const nr = Math.ceil(reference.value.length / stepS);
 	const nw = Math.ceil(wearable.value.length / stepS);
 	const size = powerOfTwo(nr + nw);
@@ -56,15 +72,9 @@ export function coarseSearch(reference: SecondGrid, wearable: SecondGrid, option
 		}
 	};
 
-	const slopesOf = (grid: SecondGrid) => ({
-		wide: clipped(smoothedSlope(grid.value, 8, 10), slopeLimits[0]),
-		narrow: clipped(smoothedSlope(grid.value, 5, 6), slopeLimits[1])
-	});
-	const sr = slopesOf(reference);
-	const sw = slopesOf(wearable);
-	loadSlopes(input, sr, stepS);
+	loadSlopes(input, reference.value, slopes, stepS);
 	plan.transform(r, input);
-	loadSlopes(input, sw, stepS);
+	loadSlopes(input, wearable.value, slopes, stepS);
 	plan.transform(w, input);
 	accumulate(1);
 
@@ -72,10 +82,13 @@ export function coarseSearch(reference: SecondGrid, wearable: SecondGrid, option
 	const terms = Math.ceil((2.4 * period) / (2 * Math.PI * sigma));
 	const weights = Array.from({ length: terms + 1 }, (_, j) => (j === 0 ? 1 : 2) * Math.exp(-(((2 * Math.PI * j * sigma) / period) ** 2) / 2));
 	const atZero = weights.reduce((a, b) => a + b, 0);
+	const circle = circleOf(period);
+	const stepsR = circleSteps(reference.value, stepS);
+	const stepsW = circleSteps(wearable.value, stepS);
 	for (let j = 0; j <= terms; j++) {
-		loadPhasors(input, reference.value, stepS, (2 * Math.PI * j) / period);
+		loadPhasors(input, stepsR, circle, j);
 		plan.transform(r, input);
-		loadPhasors(input, wearable.value, stepS, (2 * Math.PI * j) / period);
+		loadPhasors(input, stepsW, circle, j);
 		plan.transform(w, input);
 		accumulate((levelWeight * weights[j]) / (atZero * least));
 	}
@@ -87,30 +100,49 @@ export function coarseSearch(reference: SecondGrid, wearable: SecondGrid, option
 	return { score, firstShiftS: reference.startS - wearable.startS - (nw - 1) * stepS, stepS };
 }
 
-function loadSlopes(input: Float64Array, slopes: { wide: Float64Array; narrow: Float64Array }, stepS: number): void {
+/** Both clipped slopes, each of total energy 1, as real and imaginary part. */
+function loadSlopes(input: Float64Array, value: Float64Array, slopes: readonly [SlopeSpec, SlopeSpec], stepS: number): void {
 	input.fill(0);
-	let wide = 0;
-	let narrow = 0;
-	for (let i = 0; i < slopes.wide.length; i += stepS) {
-		wide += slopes.wide[i] ** 2;
-		narrow += slopes.narrow[i] ** 2;
-	}
-	const a = wide > 0 ? 1 / Math.sqrt(wide) : 0;
-	const b = narrow > 0 ? 1 / Math.sqrt(narrow) : 0;
-	for (let i = 0, k = 0; i < slopes.wide.length; i += stepS, k += 2) {
-		input[k] = slopes.wide[i] * a;
-		input[k + 1] = slopes.narrow[i] * b;
-	}
+	slopes.forEach(({ halfS, reachS, limit }, part) => {
+		const slope = clipped(smoothedSlope(value, halfS, reachS), limit);
+		let energy = 0;
+		for (let i = 0; i < slope.length; i += stepS) energy += slope[i] ** 2;
+		const scale = energy > 0 ? 1 / Math.sqrt(energy) : 0;
+		for (let i = 0, k = part; i < slope.length; i += stepS, k += 2) input[k] = slope[i] * scale;
+	});
 }
 
-function loadPhasors(input: Float64Array, value: Float64Array, stepS: number, turn: number): void {
-	input.fill(0);
-	for (let i = 0, k = 0; i < value.length; i += stepS, k += 2) {
-		const v = value[i];
-		if (Number.isNaN(v)) continue;
-		input[k] = turn === 0 ? 1 : Math.cos(turn * v);
-		input[k + 1] = turn === 0 ? 0 : Math.sin(turn * v);
+/** Steps of a value's phase; levels are read to a quarter of a unit. */
+const STEPS_PER_UNIT = 4;
+
+/** Cosine and sine of every step round one period. */
+function circleOf(period: number): { cos: Float64Array; sin: Float64Array } {
+	const n = period * STEPS_PER_UNIT;
+	return {
+		cos: Float64Array.from({ length: n }, (_, i) => Math.cos((2 * Math.PI * i) / n)),
+		sin: Float64Array.from({ length: n }, (_, i) => Math.sin((2 * Math.PI * i) / n))
+	};
+}
+
+/** Each searched second's value in steps; −1 where there is none. */
+function circleSteps(value: Float64Array, stepS: number): Int32Array {
+	const out = new Int32Array(Math.ceil(value.length / stepS)).fill(-1);
+	for (let i = 0, k = 0; i < value.length; i += stepS, k++) if (value[i] === value[i]) out[k] = Math.max(0, Math.round(value[i] * STEPS_PER_UNIT));
+	return out;
+}
+
+function loadPhasors(input: Float64Array, steps: Int32Array, circle: { cos: Float64Array; sin: Float64Array }, turns: number): void {
+	const round = circle.cos.length - 1;
+	for (let i = 0, k = 0; i < steps.length; i++, k += 2) {
+		if (steps[i] < 0) {
+			input[k] = input[k + 1] = 0;
+			continue;
+		}
+		const at = (steps[i] * turns) & round;
+		input[k] = circle.cos[at];
+		input[k + 1] = circle.sin[at];
 	}
+	input.fill(0, 2 * steps.length);
 }
 
 function countValid(grid: SecondGrid, stepS: number): number {

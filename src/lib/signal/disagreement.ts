@@ -6,21 +6,36 @@
  */
 import { smoothedSlope } from './slopes';
 
+/** What counts as far apart, in the unit of the values compared. */
+export interface LossScale {
+	/** Slopes are differences of the mean over ±half between reach seconds after and before. */
+	slopeHalfS: number;
+	slopeReachS: number;
+	/** Squares of the differences at which half of the loss is reached: of levels, of slopes. */
+	levelSq: number;
+	slopeSq: number;
+}
+
 /** Half of the loss of a level is reached at 7 bpm, of a slope (over 20 s) at 5 bpm. */
-const LEVEL_SQ = 49;
-const SLOPE_SQ = 25;
+export const HEART_RATE_SCALE: LossScale = { slopeHalfS: 8, slopeReachS: 10, levelSq: 49, slopeSq: 25 };
 /** Fewer seconds than this cannot be compared. */
 const LEAST_COMPARED_S = 30;
 
-/** A grid with its slopes, ready to be compared. */
+/** A grid with its slopes, ready to be compared with another of the same scale. */
 export interface Compared {
 	startS: number;
 	value: Float64Array;
 	slope: Float64Array;
+	scale: LossScale;
 }
 
 /** @param value one value a second, NaN where there is none */
-export const compared = (startS: number, value: Float64Array): Compared => ({ startS, value, slope: smoothedSlope(value, 8, 10) });
+export const compared = (startS: number, value: Float64Array, scale: LossScale = HEART_RATE_SCALE): Compared => ({
+	startS,
+	value,
+	slope: smoothedSlope(value, scale.slopeHalfS, scale.slopeReachS),
+	scale
+});
 
 /**
  * Mean bounded disagreement when the wearable's stamps move by `shiftS`; linear between the reference's seconds.
@@ -34,6 +49,7 @@ export function disagreement(reference: Compared, wearable: Compared, shiftS: nu
 	const rest = 1 - part;
 	const { value: rv, slope: rs } = reference;
 	const { value: wv, slope: ws } = wearable;
+	const { levelSq, slopeSq } = wearable.scale;
 	let level = 0;
 	let levels = 0;
 	let slope = 0;
@@ -43,13 +59,13 @@ export function disagreement(reference: Compared, wearable: Compared, shiftS: nu
 		const e = wv[i] - (rv[k] * rest + rv[k + 1] * part);
 		const q = e * e;
 		if (q === q) {
-			level += q / (q + LEVEL_SQ);
+			level += q / (q + levelSq);
 			levels++;
 		}
 		const g = ws[i] - (rs[k] * rest + rs[k + 1] * part);
 		const p = g * g;
 		if (p === p) {
-			slope += p / (p + SLOPE_SQ);
+			slope += p / (p + slopeSq);
 			slopes++;
 		}
 	}
@@ -74,6 +90,7 @@ export function blockAgreement(reference: Compared, wearable: Compared, shiftsS:
 	const count = new Float64Array(blocks * shifts);
 	const { value: rv, slope: rs } = reference;
 	const { value: wv, slope: ws } = wearable;
+	const { levelSq, slopeSq } = wearable.scale;
 	for (let s = 0; s < shifts; s++) {
 		const offset = wearable.startS + shiftsS[s] - reference.startS;
 		const whole = Math.floor(offset);
@@ -93,7 +110,7 @@ export function blockAgreement(reference: Compared, wearable: Compared, shiftsS:
 				if (q !== q) continue;
 				const g = ws[i] - (rs[k] * rest + rs[k + 1] * part);
 				const p = g * g;
-				agreed += LEVEL_SQ / (q + LEVEL_SQ) + (p === p ? SLOPE_SQ / (p + SLOPE_SQ) : 0.5);
+				agreed += levelSq / (q + levelSq) + (p === p ? slopeSq / (p + slopeSq) : 0.5);
 				seconds++;
 			}
 			sum[block * shifts + s] = agreed;
@@ -103,8 +120,9 @@ export function blockAgreement(reference: Compared, wearable: Compared, shiftsS:
 	return { sum, count, blocks, shifts };
 }
 
-/** Mean of 49 / (49 + e²) over the seconds that can be compared at the nearest whole second: 1 = the same, 0.5 = 7 bpm apart. */
+/** Mean of c² / (c² + e²) over the seconds that can be compared at the nearest whole second: 1 = the same, 0.5 = c apart (7 bpm). */
 export function levelAgreement(reference: Compared, wearable: Compared, shiftS: number): { mean: number; n: number } {
+	const { levelSq } = wearable.scale;
 	let sum = 0;
 	let n = 0;
 	const whole = Math.round(wearable.startS + shiftS - reference.startS);
@@ -112,7 +130,7 @@ export function levelAgreement(reference: Compared, wearable: Compared, shiftS: 
 	for (let i = Math.max(0, -whole); i < last; i++) {
 		const e = wearable.value[i] - reference.value[i + whole];
 		if (e !== e) continue;
-		sum += LEVEL_SQ / (e * e + LEVEL_SQ);
+		sum += levelSq / (e * e + levelSq);
 		n++;
 	}
 	return { mean: n > 0 ? sum / n : 0, n };

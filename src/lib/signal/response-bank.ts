@@ -6,7 +6,8 @@
  * response; fitting it to the reference through the right smoother finds the sum of clock and delay. The smoother with
  * the least loss decides; its own delay is added back.
  */
-import { compared, disagreement, type Compared } from './disagreement';
+import { descend, leastWholeSecond } from './close-search';
+import { compared, type Compared } from './disagreement';
 import { AVERAGE_BANK, FIRST_ORDER_BANK, NO_SMOOTHER, type Smoother } from './smoothers';
 
 export interface Refined {
@@ -25,7 +26,6 @@ export interface Refined {
 
 /** How far from the coarse shift the close search looks, s. */
 const REACH_S = 8;
-const FINE_STEP_S = 0.25;
 /** What the bank leaves of a smoothing device's delay: the mean over kinds of simulated devices with known delay. */
 const LEFT_BY_BANK_S = 0.05;
 
@@ -48,11 +48,11 @@ export interface Fit {
  */
 export function refine(bare: Compared, w: Compared, coarseS: number, every = 1): Refined {
 	const nearest = leastWholeSecond(bare, w, Math.round(coarseS), REACH_S, every);
-	const none = descend(bare, w, nearest, every, NO_SMOOTHER);
+	const none: Fit = { smoother: NO_SMOOTHER, reference: bare, ...descend(bare, w, nearest, REACH_S, every) };
 	const through = (smoother: Smoother): Fit => {
 		const r = compared(bare.startS, smoother.apply(bare.value));
 		// Through a smoother the reference is later: the matching shift is larger by most of the smoother's delay.
-		return descend(r, w, Math.round(none.shiftS + 0.85 * smoother.delayS), every, smoother);
+		return { smoother, reference: r, ...descend(r, w, Math.round(none.shiftS + 0.85 * smoother.delayS), REACH_S, every) };
 	};
 	const fits = [none, ...FIRST_ORDER_BANK.map(through), ...AVERAGE_BANK.map(through)];
 	let best = 0;
@@ -86,52 +86,4 @@ export function totalOf(best: number, shiftsS: ArrayLike<number>, losses: ArrayL
 	if (!(curve > 0) || !Number.isFinite(curve)) return at(b);
 	const u = Math.max(-0.5, Math.min(0.5, (0.5 * (losses[a] - losses[c])) / curve));
 	return at(b) + (u * (at(c) - at(a))) / 2 + (u * u * (at(a) - 2 * at(b) + at(c))) / 2;
-}
-
-/** The whole second of least disagreement within `reachS` of `centre`. */
-export function leastWholeSecond(r: Compared, w: Compared, centre: number, reachS: number, every = 1): number {
-	let least = centre;
-	let loss = Infinity;
-	for (let s = centre - reachS; s <= centre + reachS; s++) {
-		const l = disagreement(r, w, s, every);
-		if (l < loss) {
-			loss = l;
-			least = s;
-		}
-	}
-	return least;
-}
-
-/** Walks downhill by whole seconds, then by quarters; a parabola gives the rest. */
-function descend(r: Compared, w: Compared, start: number, every: number, smoother: Smoother): Fit {
-	const known = new Map<number, number>();
-	const lossAt = (s: number) => {
-		let l = known.get(s);
-		if (l === undefined) {
-			l = disagreement(r, w, s, every);
-			known.set(s, l);
-		}
-		return l;
-	};
-	let s = start;
-	for (const step of [1, FINE_STEP_S]) {
-		for (let moves = 0; moves < REACH_S; moves++) {
-			const here = lossAt(s);
-			const before = lossAt(s - step);
-			const after = lossAt(s + step);
-			if (before < here && before <= after) s -= step;
-			else if (after < here) s += step;
-			else break;
-		}
-		// The parabola of the whole seconds saves most of the quarter steps.
-		if (step === 1) s += Math.round(vertex(lossAt(s - 1), lossAt(s), lossAt(s + 1)) / FINE_STEP_S) * FINE_STEP_S;
-	}
-	const loss = lossAt(s);
-	return { smoother, reference: r, shiftS: s + FINE_STEP_S * vertex(lossAt(s - FINE_STEP_S), loss, lossAt(s + FINE_STEP_S)), loss, atEdge: Math.abs(s - start) >= REACH_S };
-}
-
-/** Place of the least value of a parabola through three equally spaced ones, in steps from the middle; at most half a step. */
-function vertex(before: number, here: number, after: number): number {
-	const curve = before - 2 * here + after;
-	return curve > 0 && Number.isFinite(curve) ? Math.max(-0.5, Math.min(0.5, (0.5 * (before - after)) / curve)) : 0;
 }
