@@ -73,6 +73,23 @@ async function deployed(): Promise<Settings> {
 /** Everything local: cluster, mail catcher, secret, demo content. What is given in the environment replaces its part. */
 async function local(stops: Stop[]): Promise<Settings> {
 	const folder = dataFolder();
+	const port = process.env.PORT || '4180';
+	const host = process.env.HOST || '127.0.0.1';
+	const settingsWith = (databaseUrl: string, smtpUrl: string) =>
+		loadSettings({
+			...process.env,
+			PORT: port,
+			HOST: host,
+			DATABASE_URL: databaseUrl,
+			SMTP_URL: smtpUrl,
+			ORIGIN: process.env.ORIGIN || `http://127.0.0.1:${port}`,
+			AUTH_SECRET: process.env.AUTH_SECRET || localSecret(folder),
+			NONIUS_DATA: folder,
+			NONIUS_DEMO: process.env.NONIUS_DEMO || (host === '127.0.0.1' && !process.env.ORIGIN ? '1' : '0')
+		});
+	// What was given is judged before anything is started.
+	settingsWith('postgres://127.0.0.1/nonius', process.env.SMTP_URL || 'smtp://127.0.0.1');
+
 	stops.push(takeLock(join(folder, 'start.pid')));
 	const cluster = await startCluster(join(folder, 'postgres'), say);
 	stops.push(() => cluster.stop());
@@ -84,19 +101,7 @@ async function local(stops: Stop[]): Promise<Settings> {
 		stops.push(() => catcher.stop());
 		smtpUrl = catcher.smtpUrl;
 	}
-	const port = process.env.PORT || '4180';
-	const host = process.env.HOST || '127.0.0.1';
-	const settings = loadSettings({
-		...process.env,
-		PORT: port,
-		HOST: host,
-		DATABASE_URL: databaseUrl,
-		SMTP_URL: smtpUrl,
-		ORIGIN: process.env.ORIGIN || `http://127.0.0.1:${port}`,
-		AUTH_SECRET: process.env.AUTH_SECRET || localSecret(folder),
-		NONIUS_DATA: folder,
-		NONIUS_DEMO: process.env.NONIUS_DEMO || (host === '127.0.0.1' && !process.env.ORIGIN ? '1' : '0')
-	});
+	const settings = settingsWith(databaseUrl, smtpUrl);
 	if (settings.demo) await ensureDemo(settings.databaseUrl);
 	return settings;
 }

@@ -54,10 +54,11 @@ export async function main(args: string[]): Promise<number> {
 			stopCluster = () => cluster.stop();
 			const env = { TEST_DATABASE_URL: cluster.baseUrl, TEST_DATABASE_TEMPLATE: TEMPLATE };
 			await ensureDatabase(cluster, TEMPLATE);
+			// The start command is tested as it is used, so the build comes first.
+			ensureBuilt(say);
 			if (wants('integration')) vitest(tally, 'integration', env);
 			if (wants('e2e')) {
 				const chromium = ensureChromium(say);
-				ensureBuilt(say);
 				playwright(tally, { ...env, NONIUS_CHROMIUM: chromium });
 			}
 		}
