@@ -33,6 +33,6 @@ export interface EdgeMove {
 
 export interface TagDraft {
 	fromS: number;
-	to(axisS: number): void;
+	to(axisS: number, snap: boolean, reachS: number): void;
 	end(keep: boolean): void;
 }

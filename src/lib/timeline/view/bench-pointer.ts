@@ -114,7 +114,7 @@ export class BenchPointer {
 		else if (drag.what === 'edge') drag.move.to(timeAt(x, frame), !event.altKey, EDGE_SNAP_PX / pxPerS(frame));
 		else if (drag.what === 'tag') {
 			drag.draft ??= this.actions.beginTag(drag.recordingId, drag.fromS);
-			if (drag.draft) drag.draft.to(timeAt(Math.min(frame.widthPx, Math.max(0, x)), frame));
+			if (drag.draft) drag.draft.to(timeAt(Math.min(frame.widthPx, Math.max(0, x)), frame), !event.altKey, EDGE_SNAP_PX / pxPerS(frame));
 			else this.drag = null;
 		} else {
 			drag.move ??= this.actions.beginOffset(drag.recordingId);

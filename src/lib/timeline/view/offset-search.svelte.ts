@@ -85,7 +85,11 @@ export class OffsetSearch {
 	}
 
 	private send(request: SearchRequest): void {
-		this.worker.postMessage(request);
+		// The samples are cut out of the session's one buffer, and their copies handed over without another copy.
+		const cut = (t: SearchTrace): SearchTrace => ({ recordingId: t.recordingId, tS: t.tS.slice(), value: t.value.slice() });
+		if (request.ask !== 'hold') return this.worker.postMessage(request);
+		const held = { ask: request.ask, reference: cut(request.reference), wearables: request.wearables.map(cut) };
+		this.worker.postMessage(held, [held.reference, ...held.wearables].flatMap((t) => [t.tS.buffer, t.value.buffer]));
 	}
 
 	close(): void {

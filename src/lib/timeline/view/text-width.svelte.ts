@@ -1,9 +1,10 @@
-/** Width of a word in the text face at 13 px, as the lanes set it. */
+/** Width of a word in the text face at 13 px, as the lanes set it. Measured again when the face has loaded. */
 let context: CanvasRenderingContext2D | null = null;
 const known = new Map<string, number>();
+let loaded = $state(0);
 
 export function textWidth(text: string, italic: boolean): number {
-	const key = (italic ? 'i' : 'n') + text;
+	const key = `${loaded}${italic ? 'i' : 'n'}${text}`;
 	let width = known.get(key);
 	if (width === undefined) {
 		context ??= document.createElement('canvas').getContext('2d');
@@ -16,4 +17,7 @@ export function textWidth(text: string, italic: boolean): number {
 }
 
 /** Widths measured before the face had loaded are wrong: call when it has. */
-export const forgetTextWidths = (): void => known.clear();
+export function measureTextAgain(): void {
+	known.clear();
+	loaded++;
+}
