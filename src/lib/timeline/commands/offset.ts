@@ -70,7 +70,7 @@ export const setOffset =
 		if (obstacle || !track) return refuse(dispatch, obstacle ?? 'That recording is no longer in this session.');
 		const before = alignmentOf(state, recordingId);
 		const afterS = hundredths(offsetS);
-		if (before.offsetS === afterS && before.method === method) return refuse(dispatch, `${traceName(track)} stands at ${signed(afterS, 2)} s.`);
+		if (before.offsetS === afterS && (method === 'hand' || before.method === method)) return refuse(dispatch, `${traceName(track)} stands at ${signed(afterS, 2)} s.`);
 		const name = method === 'candidate' ? `${shortTraceName(track)} at a candidate` : offsetStepName(track, before.offsetS, afterS);
 		return change(dispatch, name, { alignments: withOffset(state, track, afterS, method), heldNumber: track.number });
 	};
