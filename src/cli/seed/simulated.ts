@@ -55,7 +55,7 @@ function filesOf(plan: DemoSession, session: SimulatedSession): DemoFile[] {
 	return files;
 }
 
-export function activityOf(plan: Pick<DemoSession, 'activity'>) {
+function activityOf(plan: Pick<DemoSession, 'activity'>) {
 	const activity = STUDY_ACTIVITIES.find((a) => a.name === plan.activity);
 	if (!activity) throw new Error(`${plan.activity} is not an activity of the scenario.`);
 	return activity;

@@ -3,7 +3,7 @@ import type { ReadingWarning } from '../formats/recording';
 import type { SessionState } from '../timeline/model';
 import type { ImportQuestion } from './question';
 
-export interface BoardDevice {
+interface BoardDevice {
 	modelId: string;
 	/** 0 is the reference, 1 to 6 the wearables. */
 	number: number;
@@ -12,7 +12,7 @@ export interface BoardDevice {
 	role: 'reference' | 'wearable';
 }
 
-export type UploadState = 'waiting' | 'reading' | 'asking' | 'ready' | 'filed' | 'refused';
+type UploadState = 'waiting' | 'reading' | 'asking' | 'ready' | 'filed' | 'refused';
 
 export interface BoardFile {
 	uploadId: string;
@@ -28,7 +28,7 @@ export interface BoardFile {
 	recording: BoardRecording | null;
 }
 
-export interface BoardRecording {
+interface BoardRecording {
 	recordingId: string;
 	deviceModelId: string | null;
 	firmware: string | null;

@@ -7,9 +7,10 @@ import { conflict, invalid, notFound } from '../errors';
 import type { JobSink } from '../jobs/queue';
 import { may } from '../../roles';
 import { record } from '../record/audit';
+import { isClosed } from '../session/state';
 import { KEPT_APART } from './ask-clock';
 import { devicesOfStudy, rememberedModel, rememberModel, unitOf } from './device';
-import { CLOSED_STATES, codeOf, fileRecording, lockSorting, noteOutcome, openSession, putIntoSession, refreshSession, type FiledRecording } from './filing';
+import { codeOf, fileRecording, lockSorting, noteOutcome, openSession, putIntoSession, refreshSession, type FiledRecording } from './filing';
 import { originKey } from './origin';
 import { dropUnusedBytes } from './read-upload';
 import { uploaderOf } from './uploader';
@@ -26,7 +27,6 @@ export async function answerDevice(db: Queryable, sink: JobSink, actor: Actor, u
 	return db.transaction(async (tx) => {
 		const { upload, recording } = await ownUpload(tx, actor, uploadId);
 		await requireStudyDevice(tx, upload, deviceModelId);
-		await lockSorting(tx, upload.studyId);
 		const isSorter = may(actor.role, 'session.sort');
 		const { question } = upload;
 		const key = question?.code === 'which-device' ? question.key : await keyOf(tx, recording);
@@ -57,7 +57,6 @@ export async function placeInSession(db: Queryable, sink: JobSink, actor: Actor,
 		const { upload, recording } = await ownUpload(tx, actor, uploadId);
 		const { deviceModelId } = recording;
 		if (deviceModelId === null) throw invalid(`First say which device made ${upload.fileName}, then choose its session.`);
-		await lockSorting(tx, upload.studyId);
 		await requireOpen(tx, recording.sessionId);
 		const target = sessionId ?? (await openSession(tx, recording, recording));
 		if (target === recording.sessionId) return settleAsFiled(tx, upload, 'kept', 'Left where it is.');
@@ -86,7 +85,6 @@ export async function keepApart(db: Queryable, actor: Actor, uploadId: string): 
 export async function takeOut(db: Queryable, actor: Actor, uploadId: string): Promise<void> {
 	await db.transaction(async (tx) => {
 		const { upload, recording } = await reachableUpload(tx, actor, uploadId);
-		await lockSorting(tx, upload.studyId);
 		const [raw] = upload.rawFileId ? await tx.select({ sha256: rawFiles.sha256 }).from(rawFiles).where(eq(rawFiles.id, upload.rawFileId)) : [];
 		if (recording) {
 			await requireOpen(tx, recording.sessionId);
@@ -150,11 +148,16 @@ async function requireParticipant(tx: Queryable, actor: Actor, participantId: st
 	if (!there) throw notFound('The participant');
 }
 
-/** An upload that the actor may sort: of the team, and for a contributor an own one. */
+/** An upload that the actor may sort: of the team, and for a contributor an own one. Its study's sorting is locked from here on. */
 async function reachableUpload(tx: Queryable, actor: Actor, uploadId: string): Promise<{ upload: Upload; recording: FiledRecording | null }> {
 	authorise(actor, 'recording.upload');
 	const own = may(actor.role, 'session.sort') ? undefined : eq(uploads.uploadedBy, actor.memberId);
-	const [upload] = await tx.select().from(uploads).where(and(eq(uploads.teamId, actor.teamId), eq(uploads.id, uploadId), own)).for('update');
+	const wanted = and(eq(uploads.teamId, actor.teamId), eq(uploads.id, uploadId), own);
+	const [seen] = await tx.select({ studyId: uploads.studyId }).from(uploads).where(wanted);
+	if (!seen) throw notFound('The file');
+	// The sorting first, the row second, as everybody does: two decisions at once wait for each other instead of blocking.
+	await lockSorting(tx, seen.studyId);
+	const [upload] = await tx.select().from(uploads).where(wanted).for('update');
 	if (!upload) throw notFound('The file');
 	const [recording] = upload.recordingId ? await tx.select().from(recordings).where(eq(recordings.id, upload.recordingId)) : [];
 	return { upload, recording: recording ?? null };
@@ -174,7 +177,7 @@ async function requireStudyDevice(tx: Queryable, upload: Upload, deviceModelId: 
 async function requireOpen(tx: Queryable, sessionId: string | null): Promise<void> {
 	if (sessionId === null) return;
 	const [session] = await tx.select({ code: sessions.code, state: sessions.state }).from(sessions).where(eq(sessions.id, sessionId)).for('update');
-	if (session && (CLOSED_STATES as readonly string[]).includes(session.state)) {
+	if (session && isClosed(session.state)) {
 		throw conflict(`${session.code} is ${session.state}, so nothing goes in or out. A reviewer can hand it back first.`);
 	}
 }

@@ -98,6 +98,6 @@ function clockSentence(lone: LoneWearable, session: SessionAround, found: { zone
 }
 
 /** `2 h`, `5.5 h`. */
-export function hours(seconds: number): string {
+function hours(seconds: number): string {
 	return `${seconds / 3600} h`;
 }

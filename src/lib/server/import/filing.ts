@@ -2,11 +2,12 @@
 import { and, eq, gt, inArray, lt, sql } from 'drizzle-orm';
 import type { ImportQuestion } from '../../import/question';
 import { FARTHEST_ZONE_SHIFT_S } from '../../import/zone';
+import type { SessionState } from '../../timeline/model';
 import { clockTime } from '../../text/figures';
 import type { Queryable } from '../db/client';
 import { deviceModels, participants, recordings, sessions, studies, uploads } from '../db/schema';
 import { QUEUES, type JobSink } from '../jobs/queue';
-import { settleSessionState } from '../session/state';
+import { isClosed, settleSessionState } from '../session/state';
 import { unitOf } from './device';
 import { guessActivity, guessParticipant } from './origin';
 import { placeRecording, sessionSpan, zoneMistakePossible, type Placement, type SessionSlot, type Span } from './placement';
@@ -21,10 +22,6 @@ export interface FilingOutcome {
 	message: string;
 	question: ImportQuestion | null;
 }
-
-/** States in which nothing is added to a session or taken from it: its review has begun. */
-export const CLOSED_STATES = ['in review', 'reviewed'] as const;
-const isClosed = (state: string) => (CLOSED_STATES as readonly string[]).includes(state);
 
 /** Sessions of a study are sorted by one hand at a time: two files of one new session must not open two. */
 export async function lockSorting(tx: Queryable, studyId: string): Promise<void> {
@@ -164,7 +161,7 @@ async function slotsNear(tx: Queryable, studyId: string, span: Span): Promise<Se
 	return rows.map(({ state, ...slot }) => ({ ...slot, closed: isClosed(state) }));
 }
 
-async function sessionsBetween(tx: Queryable, studyId: string, fromS: number, toS: number): Promise<(SessionAround & { state: string })[]> {
+async function sessionsBetween(tx: Queryable, studyId: string, fromS: number, toS: number): Promise<(SessionAround & { state: SessionState })[]> {
 	const rows = await tx
 		.select({ sessionId: sessions.id, code: sessions.code, startsAt: sessions.startsAt, endsAt: sessions.endsAt, state: sessions.state, participantId: sessions.participantId, deviceModelId: recordings.deviceModelId, role: deviceModels.role })
 		.from(sessions)
@@ -172,7 +169,7 @@ async function sessionsBetween(tx: Queryable, studyId: string, fromS: number, to
 		.leftJoin(deviceModels, eq(deviceModels.id, recordings.deviceModelId))
 		.where(and(eq(sessions.studyId, studyId), lt(sessions.startsAt, new Date(toS * 1000 + 1000)), gt(sessions.endsAt, new Date(fromS * 1000 - 1000))))
 		.orderBy(sessions.code);
-	const found = new Map<string, SessionAround & { state: string }>();
+	const found = new Map<string, SessionAround & { state: SessionState }>();
 	for (const row of rows) {
 		const session = found.get(row.sessionId) ?? {
 			sessionId: row.sessionId,

@@ -38,15 +38,15 @@ export type Placement =
 	| { kind: 'new' }
 	| { kind: 'ask'; question: ImportQuestion; slots: SessionSlot[] };
 
-export const LEAST_OVERLAP_SHARE = 0.5;
+const LEAST_OVERLAP_SHARE = 0.5;
 
 /** Seconds that two spans have in common, 0 when they do not meet. */
-export function overlapS(a: Span, b: Span): number {
+function overlapS(a: Span, b: Span): number {
 	return Math.max(0, Math.min(a.endS, b.endS) - Math.max(a.startS, b.startS));
 }
 
 /** Overlap as a share of the shorter span, 0 to 1. A span without length counts as inside or outside. */
-export function overlapShare(a: Span, b: Span): number {
+function overlapShare(a: Span, b: Span): number {
 	const shorterS = Math.min(a.endS - a.startS, b.endS - b.startS);
 	if (shorterS <= 0) return Math.min(a.endS, b.endS) >= Math.max(a.startS, b.startS) ? 1 : 0;
 	return overlapS(a, b) / shorterS;

@@ -1,7 +1,7 @@
 /** The background job that searches a wearable's offset and writes it down as a proposal. */
 import { and, desc, eq } from 'drizzle-orm';
 import type { Queryable } from '../db/client';
-import { alignments, deviceModels, recordings } from '../db/schema';
+import { alignments, deviceModels, recordings, sessions } from '../db/schema';
 import type { Engine } from '../jobs/engine';
 import { settleSessionState } from '../session/state';
 import { heartRateOf } from './heart-rate';
@@ -18,7 +18,8 @@ export async function proposeShift(db: Queryable, engine: Engine, recordingId: s
 	const estimate = await engine.estimateShift(reference, wearable);
 
 	await db.transaction(async (tx) => {
-		// Held, so that the recording does not move to another session between the search and its result.
+		// Held, session first, so that the recording does not move between the search and its result.
+		await tx.select({ id: sessions.id }).from(sessions).where(eq(sessions.id, pair.sessionId)).for('update');
 		await tx.select({ id: recordings.id }).from(recordings).where(eq(recordings.id, recordingId)).for('update');
 		const now = await pairOf(tx, recordingId);
 		if (now?.referenceId !== pair.referenceId || (await isDecided(tx, recordingId))) return;
@@ -30,7 +31,7 @@ export async function proposeShift(db: Queryable, engine: Engine, recordingId: s
 }
 
 /** The reference beside which a wearable stands; null when it has none, or is one. */
-export async function pairOf(db: Queryable, recordingId: string): Promise<{ teamId: string; sessionId: string; referenceId: string } | null> {
+async function pairOf(db: Queryable, recordingId: string): Promise<{ teamId: string; sessionId: string; referenceId: string } | null> {
 	const [own] = await db
 		.select({ teamId: recordings.teamId, sessionId: recordings.sessionId, role: deviceModels.role })
 		.from(recordings)

@@ -11,7 +11,7 @@ import { EngineStopped, type Engine, type ReadEntry } from '../jobs/engine';
 import { QUEUE_SCHEMA, QUEUES, type JobSink } from '../jobs/queue';
 import { record } from '../record/audit';
 import { devicesOfStudy, rememberedModel, type StudyDevice } from './device';
-import { fileRecording, noteOutcome, type FiledRecording } from './filing';
+import { fileRecording, lockSorting, noteOutcome, type FiledRecording } from './filing';
 import { guessDevice, originKey } from './origin';
 import { duplicateSentence, earlierUpload, keepBytes } from './receive';
 import { uploaderOf, type Uploader } from './uploader';
@@ -53,9 +53,12 @@ async function startReading(db: Queryable, uploadId: string): Promise<{ fileName
 	return raw ? { fileName: upload.fileName, bytes: raw.bytes } : null;
 }
 
-/** The upload's row locked, in one transaction, if it is still to be settled. */
+/** The study's sorting and the upload's row held, in one transaction, if it is still to be settled. */
 async function inOneGo(db: Queryable, uploadId: string, settleIt: (tx: Queryable, upload: Upload) => Promise<void>): Promise<void> {
 	await db.transaction(async (tx) => {
+		const [seen] = await tx.select({ studyId: uploads.studyId }).from(uploads).where(eq(uploads.id, uploadId));
+		if (!seen) return;
+		await lockSorting(tx, seen.studyId);
 		const [upload] = await tx.select().from(uploads).where(eq(uploads.id, uploadId)).for('update');
 		if (upload && (upload.state === 'reading' || upload.state === 'waiting')) await settleIt(tx, upload);
 	});

@@ -10,7 +10,7 @@ import { QUEUES, type JobSink } from '../jobs/queue';
 import { record } from '../record/audit';
 
 /** Where the deployment says nothing else. */
-export const LARGEST_FILE_BYTES = 64 * 1024 * 1024;
+const LARGEST_FILE_BYTES = 64 * 1024 * 1024;
 
 export interface UploadedFile {
 	fileName: string;
