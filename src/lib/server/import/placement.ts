@@ -46,7 +46,7 @@ function overlapS(a: Span, b: Span): number {
 }
 
 /** Overlap as a share of the shorter span, 0 to 1. A span without length counts as inside or outside. */
-function overlapShare(a: Span, b: Span): number {
+export function overlapShare(a: Span, b: Span): number {
 	const shorterS = Math.min(a.endS - a.startS, b.endS - b.startS);
 	if (shorterS <= 0) return Math.min(a.endS, b.endS) >= Math.max(a.startS, b.startS) ? 1 : 0;
 	return overlapS(a, b) / shorterS;
