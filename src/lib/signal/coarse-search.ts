@@ -9,7 +9,7 @@
  *
  * Masked correlation in the Fourier domain: Padfield D (2012) IEEE Trans Image Process 21:2706-2718.
  */
-import { fftPlan, powerOfTwo } from './fft-plan';
+import { complexBuffer, fftPlan, inverseReal, powerOfTwo } from './fft-plan';
 import type { SecondGrid } from './second-grid';
 import type { ShiftCandidate } from './shift';
 import { clipped, smoothedSlope } from './slopes';
@@ -57,26 +57,21 @@ export function coarseSearch(reference: SecondGrid, wearable: SecondGrid, option
 	const stepS = reference.value.length + wearable.value.length > LONG_S ? 4 : 2;
 	const nr = Math.ceil(reference.value.length / stepS);
 	const nw = Math.ceil(wearable.value.length / stepS);
-	const size = powerOfTwo(nr + nw);
+	const size = Math.max(4, powerOfTwo(nr + nw));
 	const plan = fftPlan(size);
-	const input = new Float64Array(2 * size);
-	const r = new Float64Array(2 * size);
-	const w = new Float64Array(2 * size);
-	const sum = new Float64Array(2 * size);
-
-	/** Adds weight · R conj(W) to the sum of spectra. */
-	const accumulate = (weight: number) => {
-		for (let k = 0; k < 2 * size; k += 2) {
-			sum[k] += weight * (r[k] * w[k] + r[k + 1] * w[k + 1]);
-			sum[k + 1] += weight * (r[k + 1] * w[k] - r[k] * w[k + 1]);
-		}
-	};
+	const input = complexBuffer(size, 'input');
+	const r = complexBuffer(size, 'first');
+	const w = complexBuffer(size, 'second');
+	const sum = complexBuffer(size, 'sum');
 
 	loadSlopes(input, reference.value, slopes, stepS);
 	plan.transform(r, input);
 	loadSlopes(input, wearable.value, slopes, stepS);
 	plan.transform(w, input);
-	accumulate(1);
+	for (let k = 0; k < 2 * size; k += 2) {
+		sum[k] = r[k] * w[k] + r[k + 1] * w[k + 1];
+		sum[k + 1] = r[k + 1] * w[k] - r[k] * w[k + 1];
+	}
 
 	const least = Math.max(1, Math.min(countValid(reference, stepS), countValid(wearable, stepS)));
 	const terms = Math.ceil((2.4 * period) / (2 * Math.PI * sigma));
@@ -86,17 +81,27 @@ export function coarseSearch(reference: SecondGrid, wearable: SecondGrid, option
 	const stepsR = circleSteps(reference.value, stepS);
 	const stepsW = circleSteps(wearable.value, stepS);
 	for (let j = 0; j <= terms; j++) {
+		const weight = (levelWeight * weights[j]) / (atZero * least);
 		loadPhasors(input, stepsR, circle, j);
 		plan.transform(r, input);
 		loadPhasors(input, stepsW, circle, j);
 		plan.transform(w, input);
-		accumulate((levelWeight * weights[j]) / (atZero * least));
+		for (let k = 0; k < 2 * size; k += 2) {
+			sum[k] += weight * (r[k] * w[k] + r[k + 1] * w[k + 1]);
+			sum[k + 1] += weight * (r[k + 1] * w[k] - r[k] * w[k + 1]);
+		}
 	}
 
-	plan.inverseTransform(r, sum);
-	const lags = nr + nw - 1;
-	const score = new Float64Array(lags);
-	for (let k = 0; k < lags; k++) score[k] = r[2 * ((k - (nw - 1) + size) & (size - 1))];
+	// Only the real part of the column is wanted: that of the spectrum's mean with its own mirror image.
+	for (let k = 0; k <= size / 2; k++) {
+		const m = (size - k) & (size - 1);
+		input[2 * k] = (sum[2 * k] + sum[2 * m]) / 2;
+		input[2 * k + 1] = (sum[2 * k + 1] - sum[2 * m + 1]) / 2;
+	}
+	inverseReal(size, input, r);
+	const score = new Float64Array(nr + nw - 1);
+	score.set(r.subarray(size - (nw - 1), size), 0);
+	score.set(r.subarray(0, nr), nw - 1);
 	return { score, firstShiftS: reference.startS - wearable.startS - (nw - 1) * stepS, stepS };
 }
 
@@ -151,18 +156,28 @@ function countValid(grid: SecondGrid, stepS: number): number {
 	return n;
 }
 
-/** Local maxima of the score, best first, at least `apartS` from each other. */
-export function peaksOf({ score, firstShiftS, stepS }: CoarseResult, most = 6, apartS = 15): ShiftCandidate[] {
+/** At most six candidates are kept. */
+const MOST_PEAKS = 6;
+/** Candidates stand at least this far apart, s. */
+const APART_S = 15;
+
+/**
+ * Local maxima of the score, best first, at least 15 s from each other.
+ * @param options `within` keeps only shifts between two values, s
+ */
+export function peaksOf({ score, firstShiftS, stepS }: CoarseResult, options: { within?: readonly [number, number] } = {}): ShiftCandidate[] {
+	const [fromS, toS] = options.within ?? [-Infinity, Infinity];
+	const first = Math.max(0, Math.ceil((fromS - firstShiftS) / stepS));
+	const last = Math.min(score.length - 1, Math.floor((toS - firstShiftS) / stepS));
 	const maxima: number[] = [];
-	for (let k = 0; k < score.length; k++)
-		if ((k === 0 || score[k] >= score[k - 1]) && (k === score.length - 1 || score[k] > score[k + 1])) maxima.push(k);
+	for (let k = first; k <= last; k++) if ((k === first || score[k] >= score[k - 1]) && (k === last || score[k] > score[k + 1])) maxima.push(k);
 	maxima.sort((a, b) => score[b] - score[a]);
 	const found: ShiftCandidate[] = [];
 	for (const k of maxima) {
 		const shiftS = firstShiftS + k * stepS;
-		if (found.some((f) => Math.abs(f.shiftS - shiftS) < apartS)) continue;
+		if (found.some((f) => Math.abs(f.shiftS - shiftS) < APART_S)) continue;
 		found.push({ shiftS, score: score[k] });
-		if (found.length === most) break;
+		if (found.length === MOST_PEAKS) break;
 	}
 	return found;
 }

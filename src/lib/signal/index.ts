@@ -1,5 +1,6 @@
 /** Signal methods: from traces on clocks of their own to one time axis. */
 export { estimateBestFitShift, judge, searchBestFitShift, type Evidence, type ShiftSearch } from './best-fit-shift';
+export { coarseSearch, HEART_RATE_SEARCH, peaksOf, type CoarseResult } from './coarse-search';
 export { crossCorrelate } from './fft-plan';
 export { correlationAtShift, prepareTrace, shiftCurve, type PreparedTrace } from './shift-curve';
 export type { ShiftCandidate, ShiftCurve, ShiftEstimate } from './shift';

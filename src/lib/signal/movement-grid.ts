@@ -7,8 +7,11 @@ import { centredMean } from './slopes';
 export const MOVEMENT_SCALE = { cadence: 1, speed: 10, altitude: 6 } as const;
 export type MovementKind = keyof typeof MOVEMENT_SCALE;
 
-/** A recorder that wrote anything within this time was running, s. */
-const RUNNING_S = 3;
+export interface MovementGrid extends SecondGrid {
+	/** Usual time between records, s. */
+	medianIntervalS: number;
+}
+
 /** Half of the mean, and half of the reach, over which climb is read, s. */
 const CLIMB_HALF_S = 2;
 const CLIMB_REACH_S = 5;
@@ -16,38 +19,35 @@ const CLIMB_REACH_S = 5;
 /**
  * One movement channel on the recorder's clock.
  *
- * Readers keep no reading of 0, so a standing wearer is a gap in cadence and speed. Where the recorder wrote other
- * values meanwhile, the gap is filled with 0: stops are what tells most. Where it wrote nothing, it stays empty.
+ * Readers keep no reading of 0, so a standing wearer is a gap in cadence and speed. A record that the recorder wrote
+ * without it stands for 0: stops are what tells most. Where nothing at all was written, the grid stays empty.
  * @param traces all channels of the recording
  * @returns null when the recording lacks the channel
  */
-export function movementGrid(traces: readonly Trace[], kind: MovementKind): SecondGrid | null {
+export function movementGrid(traces: readonly Trace[], kind: MovementKind): MovementGrid | null {
 	const trace = traces.find((t) => t.kind === kind);
 	if (!trace || trace.tS.length < 2) return null;
 	const scale = MOVEMENT_SCALE[kind];
 	if (kind === 'altitude') {
 		const grid = secondGrid(trace);
-		return counted(grid.startS, climb(grid.value).map((v) => v * scale));
+		return counted(grid.startS, climb(grid.value).map((v) => v * scale), medianInterval(trace.tS));
 	}
-	const running = runningSeconds(traces.filter((t) => STAMPED_BY_RECORDER.includes(t.kind)));
-	if (!running) return null;
-	const grid = secondGrid(trace, 0, Infinity, RUNNING_S);
-	const value = new Float64Array(running.on.length).fill(NaN);
-	for (let i = 0; i < value.length; i++) {
-		const v = grid.value[i + running.startS - grid.startS];
-		if (v === v && v !== undefined) value[i] = v * scale;
-		else if (running.on[i]) value[i] = 0;
+	const tS = recordTimes(traces);
+	const value = new Float64Array(tS.length);
+	for (let i = 0, k = 0; i < tS.length; i++) {
+		while (k < trace.tS.length && trace.tS[k] < tS[i]) k++;
+		value[i] = k < trace.tS.length && trace.tS[k] === tS[i] ? trace.value[k] * scale : 0;
 	}
-	return counted(running.startS, value);
+	return { ...secondGrid({ tS, value }), medianIntervalS: medianInterval(tS) };
 }
 
 /** Traces that the recorder itself stamps, once a record. */
 const STAMPED_BY_RECORDER: ChannelKind[] = ['heartRate', 'cadence', 'speed', 'power', 'altitude', 'distance', 'temperature'];
 
-function counted(startS: number, value: Float64Array): SecondGrid {
+function counted(startS: number, value: Float64Array, medianIntervalS: number): MovementGrid {
 	let valid = 0;
 	for (const v of value) if (v === v) valid++;
-	return { startS, value, valid };
+	return { startS, value, valid, medianIntervalS };
 }
 
 /** Metres climbed in 10 s. */
@@ -58,18 +58,14 @@ function climb(altitudeM: Float64Array): Float64Array {
 	return out;
 }
 
-/** Seconds within reach of any reading, from the first to the last. */
-function runningSeconds(traces: readonly Trace[]): { startS: number; on: Uint8Array } | null {
-	let first = Infinity;
-	let last = -Infinity;
-	for (const { tS } of traces) {
-		if (tS.length === 0) continue;
-		first = Math.min(first, tS[0]);
-		last = Math.max(last, tS[tS.length - 1]);
-	}
-	if (!(last > first) || last - first > 4 * 86_400) return null;
-	const startS = Math.ceil(first);
-	const on = new Uint8Array(Math.floor(last) - startS + 1);
-	for (const { tS } of traces) for (const t of tS) on.fill(1, Math.max(0, Math.round(t) - startS - RUNNING_S), Math.max(0, Math.round(t) - startS + RUNNING_S + 1));
-	return { startS, on };
+/** Every time at which the recorder wrote something, rising. */
+function recordTimes(traces: readonly Trace[]): Float64Array {
+	const all = new Set<number>();
+	for (const { kind, tS } of traces) if (STAMPED_BY_RECORDER.includes(kind)) for (const t of tS) all.add(t);
+	return Float64Array.from(all).sort();
+}
+
+function medianInterval(tS: Float64Array): number {
+	const steps = Float64Array.from({ length: tS.length - 1 }, (_, i) => tS[i + 1] - tS[i]).sort();
+	return steps.length > 0 ? steps[steps.length >> 1] : Infinity;
 }

@@ -21,10 +21,10 @@ const MEDIAN_HALF_S = 7;
 const LONGEST_S = 4 * 86_400;
 
 /**
- * Puts readings on whole seconds, linear between readings at most `bridgedS` (10 s) apart, empty elsewhere.
+ * Puts readings on whole seconds, linear between readings at most 10 s apart, empty elsewhere.
  * @param trace strictly increasing times; readings out of [low, high] are ignored
  */
-export function secondGrid(trace: Pick<Trace, 'tS' | 'value'>, low = -Infinity, high = Infinity, bridgedS = BRIDGED_GAP_S): SecondGrid {
+export function secondGrid(trace: Pick<Trace, 'tS' | 'value'>, low = -Infinity, high = Infinity): SecondGrid {
 	const { tS, value } = trace;
 	const keep: number[] = [];
 	for (let i = 0; i < tS.length; i++) if (value[i] >= low && value[i] <= high) keep.push(i);
@@ -42,7 +42,7 @@ export function secondGrid(trace: Pick<Trace, 'tS' | 'value'>, low = -Infinity, 
 	for (let k = 0; k + 1 < keep.length; k++) {
 		const [a, b] = [keep[k], keep[k + 1]];
 		const gap = tS[b] - tS[a];
-		if (gap > bridgedS) {
+		if (gap > BRIDGED_GAP_S) {
 			put(Math.round(tS[a]), value[a]);
 			continue;
 		}
