@@ -36,15 +36,12 @@ type Stored = typeof alignments.$inferSelect;
 export async function saveAlignment(db: Queryable, actor: Actor, recordingId: string, baseVersion: number, wanted: AlignmentToSave): Promise<{ version: number }> {
 	authorise(actor, 'session.align');
 	return db.transaction(async (tx) => {
-		const [recording] = await tx
-			.select({ sessionId: recordings.sessionId, role: deviceModels.role, name: deviceModels.name })
-			.from(recordings)
-			.innerJoin(deviceModels, eq(deviceModels.id, recordings.deviceModelId))
-			.where(and(eq(recordings.teamId, actor.teamId), eq(recordings.id, recordingId)));
-		if (!recording?.sessionId) throw notFound('This recording');
-		if (recording.role === 'reference') throw invalid('The reference’s clock is the axis: it has no offset.');
-		const session = await holdSession(tx, actor, recording.sessionId);
+		const seen = await wearableOf(tx, actor, recordingId);
+		const session = await holdSession(tx, actor, seen.sessionId);
 		requireOpen(session);
+		// Read again now that the session is held: the recording may have been moved to another one in between.
+		const recording = await wearableOf(tx, actor, recordingId);
+		if (recording.sessionId !== session.id) throw conflict(`${recording.name} was moved to another session meanwhile. Load the page again.`);
 
 		const versions = await tx.select().from(alignments).where(eq(alignments.recordingId, recordingId)).orderBy(desc(alignments.version));
 		const current = versions.at(0) ?? null;
@@ -66,6 +63,17 @@ export async function saveAlignment(db: Queryable, actor: Actor, recordingId: st
 		await settleSessionState(tx, actor.teamId, session.id);
 		return { version };
 	});
+}
+
+async function wearableOf(tx: Queryable, actor: Actor, recordingId: string): Promise<{ sessionId: string; name: string }> {
+	const [recording] = await tx
+		.select({ sessionId: recordings.sessionId, role: deviceModels.role, name: deviceModels.name })
+		.from(recordings)
+		.innerJoin(deviceModels, eq(deviceModels.id, recordings.deviceModelId))
+		.where(and(eq(recordings.teamId, actor.teamId), eq(recordings.id, recordingId)));
+	if (!recording?.sessionId) throw notFound('This recording');
+	if (recording.role === 'reference') throw invalid('The reference’s clock is the axis: it has no offset.');
+	return { sessionId: recording.sessionId, name: recording.name };
 }
 
 const sameOffset = (a: AlignmentToSave, b: AlignmentToSave): boolean => a.offsetS === b.offsetS && a.driftPpm === b.driftPpm && a.locked === b.locked && a.method === b.method;
