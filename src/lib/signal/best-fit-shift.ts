@@ -57,8 +57,13 @@ export function estimateBestFitShift(reference: Pick<Trace, 'tS' | 'value'>, wea
 	return searchBestFitShift(reference, wearable).estimate;
 }
 
+export interface SearchOptions {
+	/** Look only at shifts between these, s; all overlaps when left out. */
+	withinS?: readonly [number, number];
+}
+
 /** As `estimateBestFitShift`, with the evidence that the rule of reliability saw. */
-export function searchBestFitShift(reference: Pick<Trace, 'tS' | 'value'>, wearable: Pick<Trace, 'tS' | 'value'>): ShiftSearch {
+export function searchBestFitShift(reference: Pick<Trace, 'tS' | 'value'>, wearable: Pick<Trace, 'tS' | 'value'>, options: SearchOptions = {}): ShiftSearch {
 	const r = heartRateGrid(reference);
 	const w = heartRateGrid(wearable);
 	if (r.valid < LEAST_VALID_S || w.valid < LEAST_VALID_S) {
@@ -69,7 +74,7 @@ export function searchBestFitShift(reference: Pick<Trace, 'tS' | 'value'>, weara
 			evidence: null
 		};
 	}
-	const candidates = peaksOf(coarseSearch(r, w));
+	const candidates = peaksOf(coarseSearch(r, w), options.withinS);
 	if (candidates.length === 0 || !(candidates[0].score > 0))
 		return { estimate: nothing('flat', 'Not determinable: the two traces have nothing in common at any shift. Check that both files belong to the same session, or place the offset by hand.'), evidence: null };
 
@@ -84,14 +89,17 @@ export function searchBestFitShift(reference: Pick<Trace, 'tS' | 'value'>, weara
 	const { code, sentence } = judge(evidence);
 	const shiftS = settledShift(refined, confidence);
 	const half = Math.hypot(SPREAD_FACTOR * 1.96 * confidence.standardErrorS, MODEL_HALF_WIDTH_S);
+	const sentences = [sentence];
+	if (r.startS + r.value.length <= w.startS || w.startS + w.value.length <= r.startS) sentences.push('The stated times of the two recordings do not overlap, so their shapes alone decided.');
 	const zone = zoneWords(shiftS);
+	if (zone) sentences.push(`The shift looks like ${zone}.`);
 	return {
 		estimate: {
 			bestFitShiftS: shiftS,
 			ci95: [shiftS - half, shiftS + half],
 			reliable: code === 'reliable',
 			reasonCode: code,
-			reason: zone ? `${sentence} The shift looks like ${zone}.` : sentence,
+			reason: sentences.join(' '),
 			candidates: candidates.map((c, i) => ({ shiftS: i === 0 ? shiftS : c.shiftS, score: c.score })),
 			clockOffsetS: null,
 			clockOffsetCi95: null,

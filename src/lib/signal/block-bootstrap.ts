@@ -5,7 +5,12 @@
 import type { BlockSums } from './disagreement';
 import { randomBits } from './random-bits';
 
-export const BLOCK_S = 60;
+const BLOCK_S = 60;
+/** Longer recordings are cut into longer blocks: more of them take time and tell no more. */
+const MOST_BLOCKS = 240;
+
+/** Length of the blocks of a recording of so many seconds, s. */
+export const blockLengthS = (lengthS: number) => Math.max(BLOCK_S, Math.ceil(lengthS / MOST_BLOCKS));
 /** The three shifts through which a parabola is laid stand this far apart, s. */
 export const PROBE_S = 1.5;
 const RESAMPLES = 300;

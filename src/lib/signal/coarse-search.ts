@@ -42,7 +42,7 @@ export const HEART_RATE_SEARCH: CoarseOptions = {
 };
 
 /** Both traces together longer than this are searched on every fourth second instead of every second one, s. */
-const LONG_S = 16 * 3600;
+const LONG_S = 4 * 3600;
 
 export interface CoarseResult {
 	/** Score at each lag; shift of lag k is `firstShiftS + k * stepS`. */
@@ -163,10 +163,10 @@ const APART_S = 15;
 
 /**
  * Local maxima of the score, best first, at least 15 s from each other.
- * @param options `within` keeps only shifts between two values, s
+ * @param withinS keep only shifts between these, s
  */
-export function peaksOf({ score, firstShiftS, stepS }: CoarseResult, options: { within?: readonly [number, number] } = {}): ShiftCandidate[] {
-	const [fromS, toS] = options.within ?? [-Infinity, Infinity];
+export function peaksOf({ score, firstShiftS, stepS }: CoarseResult, withinS: readonly [number, number] = [-Infinity, Infinity]): ShiftCandidate[] {
+	const [fromS, toS] = withinS;
 	const first = Math.max(0, Math.ceil((fromS - firstShiftS) / stepS));
 	const last = Math.min(score.length - 1, Math.floor((toS - firstShiftS) / stepS));
 	const maxima: number[] = [];

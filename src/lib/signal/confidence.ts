@@ -1,5 +1,5 @@
 /** How sure a best-fit shift is: how narrow under resampling, how far ahead of other shifts, how well the levels agree there. */
-import { BLOCK_S, PROBE_S, resampleShift, winShare, type ResampledShift } from './block-bootstrap';
+import { blockLengthS, PROBE_S, resampleShift, winShare, type ResampledShift } from './block-bootstrap';
 import { blockAgreement, levelAgreement, type Compared } from './disagreement';
 import { totalOf, type Refined } from './response-bank';
 
@@ -21,7 +21,8 @@ export interface Confidence extends ResampledShift {
  * @param every look at one second in this many only
  */
 export function confidenceOf(bare: Compared, w: Compared, refined: Refined, candidatesS: number[], leastValidS: number, every = 1): Confidence {
-	const members = refined.fits.map(({ reference, shiftS }) => blockAgreement(reference, w, [shiftS - PROBE_S, shiftS, shiftS + PROBE_S], BLOCK_S, every));
+	const blockS = blockLengthS(w.value.length);
+	const members = refined.fits.map(({ reference, shiftS }) => blockAgreement(reference, w, [shiftS - PROBE_S, shiftS, shiftS + PROBE_S], blockS, every));
 	const resampled = resampleShift(
 		members,
 		refined.fits.map((fit) => fit.shiftS),
@@ -30,7 +31,7 @@ export function confidenceOf(bare: Compared, w: Compared, refined: Refined, cand
 	const overlap = levelAgreement(bare, w, candidatesS[0] ?? refined.plainS);
 	return {
 		...resampled,
-		win: winShare(blockAgreement(bare, w, candidatesS, BLOCK_S, every)),
+		win: winShare(blockAgreement(bare, w, candidatesS, blockS, every)),
 		agreement: overlap.mean * Math.min(1, overlap.n / Math.max(1, leastValidS)),
 		overlapS: overlap.n
 	};

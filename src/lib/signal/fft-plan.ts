@@ -65,7 +65,10 @@ export function inverseReal(size: number, spectrum: Float64Array, out: Float64Ar
 	// Conjugated, so that a forward transform serves as the inverse; the scale goes in here.
 	const scale = 1 / size;
 	for (let k = 0, m = half; k <= m; k++, m--) {
-		const [kr, ki, mr, mi] = [spectrum[2 * k], spectrum[2 * k + 1], spectrum[2 * m], spectrum[2 * m + 1]];
+		const kr = spectrum[2 * k];
+		const ki = spectrum[2 * k + 1];
+		const mr = spectrum[2 * m];
+		const mi = spectrum[2 * m + 1];
 		// Even part E and odd part O of bin k; those of bin m are their mirror images.
 		const er = kr + mr;
 		const ei = ki - mi;

@@ -5,7 +5,7 @@
  * short averages until they match, as far as starts and stops show it; pure delays cannot be seen and stay in the
  * interval.
  */
-import { BLOCK_S, PROBE_S, resampleShift, winShare, type ResampledShift } from './block-bootstrap';
+import { blockLengthS, PROBE_S, resampleShift, winShare, type ResampledShift } from './block-bootstrap';
 import { descend, leastWholeSecond } from './close-search';
 import { coarseSearch, peaksOf, type CoarseOptions } from './coarse-search';
 import { blockAgreement, compared, levelAgreement, type LossScale } from './disagreement';
@@ -56,16 +56,17 @@ const SHAPE_INTERVAL_S = 1.5;
 /**
  * @param reference one movement channel of the reference's recorder, see `movementGrid`
  * @param wearable the same channel of the wearable
- * @param within look only at offsets between these, s; all overlaps when left out
+ * @param withinS look only at offsets between these, s; all overlaps when left out
  * @returns null when either side is too short or nothing matches
  */
-export function movementOffset(reference: MovementGrid, wearable: MovementGrid, within?: readonly [number, number]): MovementOffset | null {
+export function movementOffset(reference: MovementGrid, wearable: MovementGrid, withinS?: readonly [number, number]): MovementOffset | null {
 	if (reference.valid < LEAST_VALID_S || wearable.valid < LEAST_VALID_S) return null;
-	const candidates = peaksOf(coarseSearch(reference, wearable, SEARCH), { within });
+	const candidates = peaksOf(coarseSearch(reference, wearable, SEARCH), withinS);
 	if (candidates.length === 0 || !(candidates[0].score > 0)) return null;
 	const bare = compared(reference.startS, reference.value, SCALE);
 	const w = compared(wearable.startS, wearable.value, SCALE);
 	const settled = candidates.map((c) => leastWholeSecond(bare, w, Math.round(c.shiftS), 4));
+	const blockS = blockLengthS(w.value.length);
 	const fits = AVERAGES.map(([onReference, onWearable]) => {
 		const r = compared(reference.startS, average(onReference).apply(reference.value), SCALE);
 		const v = compared(wearable.startS, average(onWearable).apply(wearable.value), SCALE);
@@ -78,7 +79,7 @@ export function movementOffset(reference: MovementGrid, wearable: MovementGrid, 
 	const trust = trustInShape(reference, wearable, Math.min(edges(bare.slope), edges(w.slope)));
 	const settle = (k: number, shifts: ArrayLike<number>, loss: ArrayLike<number>) => shifts[AS_RECORDED] + trust * (betweenNeighbours(k, shifts, loss) - shifts[AS_RECORDED]);
 	const resampled = resampleShift(
-		fits.map(({ r, v, shiftS }) => blockAgreement(r, v, [shiftS - PROBE_S, shiftS, shiftS + PROBE_S], BLOCK_S)),
+		fits.map(({ r, v, shiftS }) => blockAgreement(r, v, [shiftS - PROBE_S, shiftS, shiftS + PROBE_S], blockS)),
 		shiftsS,
 		settle
 	);
@@ -87,7 +88,7 @@ export function movementOffset(reference: MovementGrid, wearable: MovementGrid, 
 	return {
 		...resampled,
 		offsetS: settle(best, shiftsS, losses),
-		win: winShare(blockAgreement(bare, w, settled, BLOCK_S)),
+		win: winShare(blockAgreement(bare, w, settled, blockS)),
 		lead: (candidates[0].score - (candidates[1]?.score ?? 0)) * root,
 		agreement: overlap.mean * Math.min(1, overlap.n / Math.max(1, Math.min(reference.valid, wearable.valid))),
 		atEdge: fits[best].atEdge || Math.abs(settled[0] - Math.round(candidates[0].shiftS)) >= 4

@@ -68,7 +68,14 @@ export function heartRateGrid(trace: Pick<Trace, 'tS' | 'value'>): SecondGrid {
  */
 export function withoutWildPoints(value: Float64Array): Float64Array {
 	const out = value.slice();
+	const spans = blockSpans(value);
 	for (let i = 0; i < value.length; i++) {
+		// Where three blocks in a row lie close together no window within them can hold a wild point.
+		const block = Math.floor(i / MEDIAN_HALF_S);
+		if (spans.high[block] - spans.low[block] <= WILD_BPM) {
+			i = (block + 1) * MEDIAN_HALF_S - 1;
+			continue;
+		}
 		const v = value[i];
 		if (v !== v) continue;
 		const half = Math.min(MEDIAN_HALF_S, i, value.length - 1 - i);
@@ -88,4 +95,19 @@ export function withoutWildPoints(value: Float64Array): Float64Array {
 		if (count >= 3 && (2 * above > count || 2 * below > count)) out[i] = NaN;
 	}
 	return out;
+}
+
+/** Lowest and highest value of every block of 7 s and its two neighbours; ±Infinity where there is none. */
+function blockSpans(value: Float64Array): { low: Float64Array; high: Float64Array } {
+	const blocks = Math.ceil(value.length / MEDIAN_HALF_S);
+	const low = new Float64Array(blocks).fill(Infinity);
+	const high = new Float64Array(blocks).fill(-Infinity);
+	for (let block = 0; block < blocks; block++) {
+		const to = Math.min(value.length, (block + 2) * MEDIAN_HALF_S);
+		for (let i = Math.max(0, (block - 1) * MEDIAN_HALF_S); i < to; i++) {
+			if (value[i] < low[block]) low[block] = value[i];
+			if (value[i] > high[block]) high[block] = value[i];
+		}
+	}
+	return { low, high };
 }
