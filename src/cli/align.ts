@@ -1,9 +1,12 @@
-/** `align REFERENCE WEARABLE [REFERENCE WEARABLE …]`: one JSON line a pair, every shift in seconds to add to the wearable's stamps. */
+/**
+ * `align REFERENCE WEARABLE [REFERENCE WEARABLE …]`: one JSON line a pair, every shift in seconds to add to the wearable's
+ * stamps. What cannot be read is a line with an error and makes the exit status 1; the other pairs are still done.
+ */
 import { readFile as readBytes } from 'node:fs/promises';
 import { basename } from 'node:path';
 import { readFile } from '../lib/formats';
-import { traceOf, type Trace } from '../lib/formats/recording';
-import { estimateBestFitShift } from '../lib/signal';
+import { traceOf, type Recording } from '../lib/formats/recording';
+import { alignRecordings } from '../lib/signal';
 
 class Refused extends Error {
 	constructor(
@@ -16,7 +19,7 @@ class Refused extends Error {
 }
 
 export async function align(args: string[]): Promise<number> {
-	if (args.length === 0 || args.length % 2 !== 0) {
+	if (args.length === 0) {
 		console.error('align takes pairs of files: REFERENCE WEARABLE [REFERENCE WEARABLE …].');
 		return 2;
 	}
@@ -24,9 +27,10 @@ export async function align(args: string[]): Promise<number> {
 	for (let i = 0; i < args.length; i += 2) {
 		const [reference, wearable] = [args[i], args[i + 1]];
 		try {
-			const estimate = estimateBestFitShift(await heartRateOf(reference), await heartRateOf(wearable));
-			const { bestFitShiftS, ci95, reliable, reason, candidates, clockOffsetS, clockOffsetCi95, responseLagS } = estimate;
-			console.log(JSON.stringify({ reference, wearable, bestFitShiftS, ci95, reliable, reason, reasonCode: estimate.reasonCode, candidates, clockOffsetS, clockOffsetCi95, responseLagS }));
+			if (wearable === undefined) throw new Refused(reference, 'no-partner', `${reference} stands alone: align takes pairs of files. Name the wearable's file after the reference's.`);
+			// The answer's promised fields, then what else is known.
+			const { bestFitShiftS, ci95, reliable, reason, candidates, clockOffsetS, clockOffsetCi95, responseLagS, ...more } = alignRecordings(await withHeartRate(reference), await withHeartRate(wearable));
+			console.log(JSON.stringify({ reference, wearable, bestFitShiftS, ci95, reliable, reason, candidates, clockOffsetS, clockOffsetCi95, responseLagS, ...more }));
 		} catch (cause) {
 			if (!(cause instanceof Refused)) throw cause;
 			refused = true;
@@ -36,13 +40,12 @@ export async function align(args: string[]): Promise<number> {
 	return refused ? 1 : 0;
 }
 
-async function heartRateOf(file: string): Promise<Trace> {
+async function withHeartRate(file: string): Promise<Recording> {
 	const bytes = await readBytes(file).catch((cause: NodeJS.ErrnoException) => {
 		throw new Refused(file, cause.code === 'ENOENT' ? 'not-found' : 'unreadable-file', cause.code === 'ENOENT' ? `There is no file ${file}. Check the path.` : `${file} cannot be opened (${cause.code ?? cause.message}). Check its permissions.`);
 	});
 	const reading = readFile(new Uint8Array(bytes), basename(file));
 	if (!reading.ok) throw new Refused(file, reading.refusal.code, reading.refusal.message);
-	const trace = traceOf(reading.recording, 'heartRate');
-	if (!trace) throw new Refused(file, 'no-heart-rate', `${file} holds no heart rate. Choose the file of a device that recorded it.`);
-	return trace;
+	if (!traceOf(reading.recording, 'heartRate')) throw new Refused(file, 'no-heart-rate', `${file} holds no heart rate. Choose the file of a device that recorded it.`);
+	return reading.recording;
 }
