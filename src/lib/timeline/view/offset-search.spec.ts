@@ -18,4 +18,10 @@ describe('when the correlation curves are asked for again', () => {
 		expect(curveCentres(20, null, known).wideAtS).toBe(0);
 		expect(curveCentres(30, null, known).wideAtS).toBe(30);
 	});
+
+	it('shows where the recordings would overlap when nothing overlaps at the offset', () => {
+		const lost = { wideAtS: 0, nearAtS: 0, empty: true };
+		expect(curveCentres(0, 7200.86, lost)).toEqual({ wideAtS: 7200.86, nearAtS: 0 });
+		expect(curveCentres(0.1, 7200.86, { wideAtS: 7200.86, nearAtS: 0, empty: false }).wideAtS).toBe(7200.86);
+	});
 });

@@ -9,14 +9,18 @@ import { NEAR_REACH_S, WIDE_REACH_S, type CurvePair, type SearchAnswer, type Sea
 export interface KnownCurves extends CurvePair {
 	wideAtS: number;
 	nearAtS: number;
+	/** The wide curve is determinable nowhere: the recordings do not overlap at those shifts. */
+	empty: boolean;
 }
 
 /** Share of a curve's reach that an offset may travel before the curve is asked for again. */
 const STAY = 0.55;
 
 /** Where the two curves should stand: the wide one round the peak while the offset is near it, the near one round the offset. */
-export function curveCentres(offsetS: number, peakS: number | null, known: Pick<KnownCurves, 'wideAtS' | 'nearAtS'> | null): { wideAtS: number; nearAtS: number } {
-	const wanted = peakS !== null && Math.abs(offsetS - peakS) < WIDE_REACH_S * 0.9 ? peakS : null;
+export function curveCentres(offsetS: number, peakS: number | null, known: (Pick<KnownCurves, 'wideAtS' | 'nearAtS'> & { empty?: boolean }) | null): { wideAtS: number; nearAtS: number } {
+	// Where nothing overlaps at the offset, the curve shows where something would.
+	const lost = known?.empty === true && known.wideAtS !== peakS;
+	const wanted = peakS !== null && (lost || known?.wideAtS === peakS || Math.abs(offsetS - peakS) < WIDE_REACH_S * 0.9) ? peakS : null;
 	const wideAtS = wanted ?? (known && Math.abs(offsetS - known.wideAtS) < WIDE_REACH_S * STAY ? known.wideAtS : offsetS);
 	const nearAtS = known && Math.abs(offsetS - known.nearAtS) < NEAR_REACH_S * STAY ? known.nearAtS : offsetS;
 	return { wideAtS, nearAtS };
@@ -63,7 +67,7 @@ export class OffsetSearch {
 		const answer = await this.answerTo(id, { ask: 'curves', id, recordingId, ...centres });
 		this.asking.delete(recordingId);
 		if (this.closed) return;
-		if (answer.ok && 'curves' in answer) this.curves.set(recordingId, { ...answer.curves, ...centres });
+		if (answer.ok && 'curves' in answer) this.curves.set(recordingId, { ...answer.curves, ...centres, empty: answer.curves.wide.r.every(Number.isNaN) });
 		else if (!answer.ok) this.problems.set(recordingId, answer.why);
 		const next = this.wanted.get(recordingId);
 		this.wanted.delete(recordingId);

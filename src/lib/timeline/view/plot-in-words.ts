@@ -107,7 +107,7 @@ export function trustInWords(estimate: ShiftEstimate | null): string {
 }
 
 /** What keeps this session from being compared, one sentence each; empty when all is there. */
-export function obstacles(tracks: readonly BenchTrack[], placeOf: PlaceOf): string[] {
+export function obstacles(tracks: readonly BenchTrack[], placeOf: PlaceOf, estimateOf: (recordingId: string) => ShiftEstimate | null = () => null): string[] {
 	const reference = tracks.find((t) => t.role === 'reference');
 	const wearables = tracks.filter((t) => t.role === 'wearable');
 	const said: string[] = [];
@@ -127,10 +127,15 @@ export function obstacles(tracks: readonly BenchTrack[], placeOf: PlaceOf): stri
 			if (apartS === null) continue;
 			const where = span.fromS > at.toS ? 'begins' : 'ends';
 			const side = span.fromS > at.toS ? 'after the reference ends' : 'before the reference begins';
-			said.push(`${traceName(t)} ${where} ${duration(Math.max(1, apartS))} ${side}, at its offset of ${signed(placeOf(t.recordingId).offsetS, 2)} s. Choose another candidate on the offset rule, or check that the file belongs here.`);
+			said.push(`${traceName(t)} ${where} ${duration(Math.max(1, apartS))} ${side}, at its offset of ${signed(placeOf(t.recordingId).offsetS, 2)} s. ${wayOut(estimateOf(t.recordingId))}`);
 		}
 	}
 	return said;
+}
+
+function wayOut(estimate: ShiftEstimate | null): string {
+	if (estimate?.reliable && estimate.bestFitShiftS !== null) return `The search found a reliable best fit at ${signed(estimate.bestFitShiftS, 2)} s: hold it and press P to put it there.`;
+	return 'Choose a candidate on the offset rule, or check that the file belongs here.';
 }
 
 export interface TableRow {

@@ -29,11 +29,22 @@ export class SessionView {
 	);
 	readonly reference: BenchTrack | null = $derived.by(() => this.tracks.find((t) => t.recordingId === referenceTrack({ tracks: this.sourceTracks })?.recordingId) ?? null);
 	readonly range = $derived.by(() => heartRateRange(this.tracks));
-	readonly kinds = $derived.by(() => new Map(this.editor.state.document.kinds.map((k) => [k.key, k])));
-	readonly plan = $derived.by(() => this.editor.state.document.plan);
+	readonly kinds = $derived.by(() => new Map(this.document.kinds.map((k) => [k.key, k])));
+	readonly plan = $derived.by(() => this.document.plan);
 	private readonly alignments = $derived.by(() => this.editor.state.alignments);
 	private readonly tags = $derived.by(() => this.editor.state.tags);
-	private readonly heldTagId = $derived.by(() => this.editor.state.heldTagId);
+	readonly heldTagId = $derived.by(() => this.editor.state.heldTagId);
+	// Parts of the state as values of their own: what is drawn from one of them is left alone when another changes.
+	readonly document = $derived.by(() => this.editor.state.document);
+	readonly whole = $derived.by(() => this.editor.state.whole);
+	readonly shown = $derived.by(() => this.editor.state.view);
+	readonly show = $derived.by(() => this.editor.state.show);
+	readonly ruleOpen: boolean = $derived.by(() => this.editor.state.ruleOpen);
+	readonly asking = $derived.by(() => this.editor.state.asking);
+	readonly draft = $derived.by(() => this.editor.state.draft);
+	readonly dragging: boolean = $derived.by(() => this.editor.state.history.gesture !== null);
+	readonly analysis = $derived.by(() => this.editor.state.analysis);
+	readonly heldTag = $derived.by(() => this.tags.find((t) => t.id === this.heldTagId) ?? null);
 	readonly cursorS: number = $derived.by(() => this.editor.state.cursorS);
 	readonly heldId: string | null = $derived.by(() => heldTrack(this.editor.state)?.recordingId ?? null);
 	readonly held: BenchTrack | null = $derived.by(() => this.tracks.find((t) => t.recordingId === this.heldId) ?? null);
