@@ -9,7 +9,7 @@
  *
  * Masked correlation in the Fourier domain: Padfield D (2012) IEEE Trans Image Process 21:2706-2718.
  */
-import { complexBuffer, fftPlan, inverseReal, powerOfTwo } from './fft-plan';
+import { complexBuffer, fastSize, inverseReal, transformOf } from './fft-plan';
 import type { SecondGrid } from './second-grid';
 import type { ShiftCandidate } from './shift';
 import { clipped, smoothedSlope } from './slopes';
@@ -57,8 +57,8 @@ export function coarseSearch(reference: SecondGrid, wearable: SecondGrid, option
 	const stepS = reference.value.length + wearable.value.length > LONG_S ? 4 : 2;
 	const nr = Math.ceil(reference.value.length / stepS);
 	const nw = Math.ceil(wearable.value.length / stepS);
-	const size = Math.max(4, powerOfTwo(nr + nw));
-	const plan = fftPlan(size);
+	const size = fastSize(nr + nw);
+	const plan = transformOf(size);
 	const input = complexBuffer(size, 'input');
 	const r = complexBuffer(size, 'first');
 	const w = complexBuffer(size, 'second');
@@ -94,7 +94,7 @@ export function coarseSearch(reference: SecondGrid, wearable: SecondGrid, option
 
 	// Only the real part of the column is wanted: that of the spectrum's mean with its own mirror image.
 	for (let k = 0; k <= size / 2; k++) {
-		const m = (size - k) & (size - 1);
+		const m = k === 0 ? 0 : size - k;
 		input[2 * k] = (sum[2 * k] + sum[2 * m]) / 2;
 		input[2 * k + 1] = (sum[2 * k + 1] - sum[2 * m + 1]) / 2;
 	}
