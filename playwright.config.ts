@@ -17,6 +17,7 @@ export default defineConfig({
 		screenshot: 'only-on-failure',
 		trace: 'off',
 		acceptDownloads: true,
+		actionTimeout: 15_000,
 		launchOptions: { executablePath: process.env.NONIUS_CHROMIUM ?? '/usr/bin/chromium', args: CHROMIUM_FLAGS }
 	}
 });
