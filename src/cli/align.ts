@@ -30,7 +30,7 @@ export async function align(args: string[]): Promise<number> {
 			if (wearable === undefined) throw new Refused(reference, 'no-partner', `${reference} stands alone: align takes pairs of files. Name the wearable's file after the reference's.`);
 			// The answer's promised fields, then what else is known.
 			const { bestFitShiftS, ci95, reliable, reason, candidates, clockOffsetS, clockOffsetCi95, responseLagS, ...more } = alignRecordings(await withHeartRate(reference), await withHeartRate(wearable));
-			console.log(JSON.stringify({ reference, wearable, bestFitShiftS, ci95, reliable, reason, candidates, clockOffsetS, clockOffsetCi95, responseLagS, ...more }));
+			console.log(JSON.stringify({ reference, wearable, bestFitShiftS, ci95, reliable, reason, candidates, clockOffsetS, clockOffsetCi95, responseLagS, ...more }, toMilliseconds));
 		} catch (cause) {
 			if (!(cause instanceof Refused)) throw cause;
 			refused = true;
@@ -39,6 +39,9 @@ export async function align(args: string[]): Promise<number> {
 	}
 	return refused ? 1 : 0;
 }
+
+/** Figures to a thousandth: more digits would only look exact. */
+const toMilliseconds = (_: string, value: unknown) => (typeof value === 'number' ? Math.round(value * 1000) / 1000 + 0 : value);
 
 async function withHeartRate(file: string): Promise<Recording> {
 	const bytes = await readBytes(file).catch((cause: NodeJS.ErrnoException) => {

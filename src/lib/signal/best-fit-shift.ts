@@ -23,8 +23,8 @@ const LEAST_OVERLAP_S = 120;
  * Half width of the interval that is left with endless data, s: real smoothers are none of the bank. It and the factor
  * on the resampled spread were chosen so that 95 to 97 % of simulated sessions are covered.
  */
-const MODEL_HALF_WIDTH_S = 0.3;
-const SPREAD_FACTOR = 1.15;
+const MODEL_HALF_WIDTH_S = 0.35;
+const SPREAD_FACTOR = 1.2;
 const VAGUE_S = 0.5;
 /** Limits of the rule of reliability; see `judge`. */
 const LEAST_LEAD = 20;

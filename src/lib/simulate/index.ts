@@ -138,3 +138,34 @@ function movement(truth: Truth, startS: number, random: RandomStream): { cadence
 		speed: column('speed', speed, 0.15, (s) => Math.round(s * 1000) / 1000)
 	};
 }
+
+/**
+ * A simulated wearable on top of a heart rate that was recorded: what the wearable adds is known, the heart is real.
+ *
+ * The recorded values count as the heart itself, so a wearable without smoothing has no response lag.
+ * @param request.heartRate one reading a second without gaps, bpm
+ */
+export function wearableOnRealHeart(request: { seed: number; heartRate: Trace; preset: Preset; activity?: Activity; character?: Partial<WearableCharacter> }): SimulatedWearable {
+	const { seed, heartRate, preset } = request;
+	const activity = request.activity ?? 'ride-outdoor';
+	const lengthS = heartRate.tS.length - 1;
+	const n = Math.floor(lengthS / TRUTH_DT_S) + 1;
+	const column = Float64Array.from({ length: n }, (_, i) => {
+		const x = i * TRUTH_DT_S;
+		const k = Math.min(heartRate.value.length - 2, Math.floor(x));
+		return heartRate.value[k] + (heartRate.value[k + 1] - heartRate.value[k]) * (x - k);
+	});
+	const none = new Float64Array(n);
+	const truth: Truth = { n, heartRateBpm: column, cadencePerMin: none, speedMS: none, intensity: none, restBpm: Math.min(...heartRate.value), maxBpm: Math.max(...heartRate.value) };
+	const character = { ...drawCharacter(preset, activity, randomStream(seed, 'wearable 0')), ...request.character };
+	return simulateWearable({
+		truth,
+		activity,
+		course: [{ startS: 0, lengthS, from: 0.5, to: 0.5, kind: 'work', moving: 1, word: 'Recorded' }],
+		lengthS,
+		startS: heartRate.tS[0],
+		character,
+		reference: { delayS: 0, windowS: 0 },
+		random: randomStream(seed, 'wearable 0 readings')
+	});
+}
