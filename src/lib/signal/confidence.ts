@@ -11,6 +11,8 @@ export interface Confidence extends ResampledShift {
 	agreement: number;
 	/** Seconds of the wearable that overlap the reference's readings at the best shift. */
 	overlapS: number;
+	/** How many blocks of the wearable could be drawn, about. */
+	blocks: number;
 }
 
 /**
@@ -33,6 +35,7 @@ export function confidenceOf(bare: Compared, w: Compared, refined: Refined, cand
 		...resampled,
 		win: winShare(blockAgreement(bare, w, candidatesS, blockS, every)),
 		agreement: overlap.mean * Math.min(1, overlap.n / Math.max(1, leastValidS)),
-		overlapS: overlap.n
+		overlapS: overlap.n,
+		blocks: Math.ceil(overlap.n / blockS)
 	};
 }
