@@ -58,7 +58,8 @@ export const DEFAULT_PLAN: AnalysisPlan = {
 	gridS: 1,
 	pairing: { method: 'interpolate', maxGapS: 5 },
 	holdLimitS: 0,
-	alignment: 'clock',
+	// Heart rate alone gives the best-fit shift; a plan asks for the clock where both sides record movement.
+	alignment: 'best-fit',
 	treatments: {},
 	minSessions: 6,
 	minParticipants: 3,
