@@ -6,12 +6,13 @@
  * smoothing it is the shift between them. Heart rate alone cannot tell clock from lag; see `clock-offset`.
  */
 import { leastWholeSecond } from './close-search';
-import { coarseSearch, peaksOf } from './coarse-search';
+import { coarseSearch, HEART_RATE_SEARCH, peaksOf } from './coarse-search';
 import { confidenceOf, type Confidence } from './confidence';
 import { compared } from './disagreement';
 import { refine, type Refined } from './response-bank';
-import { heartRateGrid } from './second-grid';
-import type { ShiftEstimate } from './shift';
+import { levelLine, lineWords, withoutLine, type LevelLine } from './level-line';
+import { heartRateGrid, type SecondGrid } from './second-grid';
+import type { ShiftCandidate, ShiftEstimate } from './shift';
 import type { Trace } from '../formats/recording';
 import { zoneWords } from './zone';
 
@@ -35,6 +36,9 @@ const WIDEST_SPREAD_S = 3.3;
 
 /** Of recordings longer than this only so many seconds are compared closely: neighbours tell nearly the same. */
 const ENOUGH_S = 14_400;
+
+/** Coarse shifts within this are one and the same, s. */
+const SAME_PEAK_S = 15;
 
 /** What the rule of reliability looks at. */
 export interface Evidence {
@@ -75,38 +79,76 @@ export function searchBestFitShift(reference: Pick<Trace, 'tS' | 'value'>, weara
 			evidence: null
 		};
 	}
-	const candidates = peaksOf(coarseSearch(r, w), options.withinS);
-	if (candidates.length === 0 || !(candidates[0].score > 0))
+	const first = attempt(r, w, options);
+	const settled = first && isReliable(first) ? first : (bySlopesAlone(r, w, first, options) ?? first);
+	if (!settled)
 		return { estimate: nothing('flat', 'Not determinable: the two traces have nothing in common at any shift. Check that both files belong to the same session, or place the offset by hand.'), evidence: null };
+	return { estimate: estimateOf(r, w, settled), evidence: settled.evidence };
+}
 
+/** One search from end to end. */
+interface Attempt {
+	candidates: ShiftCandidate[];
+	evidence: Evidence;
+	/** What was taken out of the wearable's levels before. */
+	line: LevelLine | null;
+}
+
+const isReliable = ({ evidence }: Attempt) => judge(evidence).code === 'reliable';
+
+/** Search, refine, weigh; and once more without the line when the wearable reads high or low throughout. */
+function attempt(r: SecondGrid, w: SecondGrid, { withinS }: SearchOptions, line: LevelLine | null = null): Attempt | null {
+	const wearable = line ? { ...w, value: withoutLine(w.value, line) } : w;
+	const candidates = peaksOf(coarseSearch(r, wearable), withinS);
+	if (candidates.length === 0 || !(candidates[0].score > 0)) return null;
 	const bare = compared(r.startS, r.value);
-	const worn = compared(w.startS, w.value);
+	const worn = compared(w.startS, wearable.value);
 	const every = Math.max(1, Math.floor(Math.min(r.valid, w.valid) / ENOUGH_S));
 	const refined = refine(bare, worn, candidates[0].shiftS, every);
+	if (!line) {
+		const fit = refined.fits.find((f) => f.smoother === refined.smoother);
+		const found = fit ? levelLine(fit.reference, worn, fit.shiftS, every) : null;
+		const again = found ? attempt(r, w, { withinS }, found) : null;
+		if (again && Math.abs(again.candidates[0].shiftS - candidates[0].shiftS) <= SAME_PEAK_S) return again;
+	}
 	const settled = candidates.map((c, i) => (i === 0 ? refined.plainS : leastWholeSecond(bare, worn, Math.round(c.shiftS), 4, every)));
 	const confidence = confidenceOf(bare, worn, refined, settled, Math.min(r.valid, w.valid), every);
 	const lead = candidates.length > 1 ? (candidates[0].score - candidates[1].score) * Math.sqrt(w.valid) : candidates[0].score * Math.sqrt(w.valid);
-	const evidence: Evidence = { lead, confidence, refined, validS: w.valid, overlapShare: confidence.overlapS / Math.max(1, Math.min(r.valid, w.valid)) };
+	return { candidates, line, evidence: { lead, confidence, refined, validS: w.valid, overlapShare: confidence.overlapS / Math.max(1, Math.min(r.valid, w.valid)) } };
+}
+
+/**
+ * A wearable far off throughout hides its place from a search by levels. Slopes alone know nothing of levels: where
+ * they point, the line is taken, and the whole search with the line taken out must point there too.
+ */
+function bySlopesAlone(r: SecondGrid, w: SecondGrid, first: Attempt | null, options: SearchOptions): Attempt | null {
+	const [bySlopes] = peaksOf(coarseSearch(r, w, { ...HEART_RATE_SEARCH, levelWeight: 0 }), options.withinS);
+	if (!bySlopes || (first && Math.abs(first.candidates[0].shiftS - bySlopes.shiftS) <= SAME_PEAK_S)) return null;
+	const line = levelLine(compared(r.startS, r.value), compared(w.startS, w.value), bySlopes.shiftS);
+	const found = line ? attempt(r, w, options, line) : null;
+	return found && isReliable(found) && Math.abs(found.candidates[0].shiftS - bySlopes.shiftS) <= SAME_PEAK_S ? found : null;
+}
+
+function estimateOf(r: SecondGrid, w: SecondGrid, { candidates, evidence, line }: Attempt): ShiftEstimate {
+	const { refined, confidence } = evidence;
 	const { code, sentence } = judge(evidence);
-	const shiftS = settledShift(refined, confidence);
-	const half = Math.hypot(SPREAD_FACTOR * student975(confidence.blocks - 1) * confidence.standardErrorS, MODEL_HALF_WIDTH_S);
+	const shiftS = toMilliseconds(settledShift(refined, confidence));
+	const half = Math.hypot(SPREAD_FACTOR * 1.96 * confidence.standardErrorS, MODEL_HALF_WIDTH_S);
 	const sentences = [sentence];
+	if (line) sentences.push(`The wearable reads ${lineWords(line)} throughout; the search allowed for it.`);
 	if (r.startS + r.value.length <= w.startS || w.startS + w.value.length <= r.startS) sentences.push('The stated times of the two recordings do not overlap, so their shapes alone decided.');
 	const zone = zoneWords(shiftS);
 	if (zone) sentences.push(`The shift looks like ${zone}.`);
 	return {
-		estimate: {
-			bestFitShiftS: shiftS,
-			ci95: [shiftS - half, shiftS + half],
-			reliable: code === 'reliable',
-			reasonCode: code,
-			reason: sentences.join(' '),
-			candidates: candidates.map((c, i) => ({ shiftS: i === 0 ? shiftS : c.shiftS, score: c.score })),
-			clockOffsetS: null,
-			clockOffsetCi95: null,
-			responseLagS: null
-		},
-		evidence
+		bestFitShiftS: shiftS,
+		ci95: [toMilliseconds(shiftS - half), toMilliseconds(shiftS + half)],
+		reliable: code === 'reliable',
+		reasonCode: code,
+		reason: sentences.join(' '),
+		candidates: candidates.map((c, i) => ({ shiftS: i === 0 ? shiftS : c.shiftS, score: c.score })),
+		clockOffsetS: null,
+		clockOffsetCi95: null,
+		responseLagS: null
 	};
 }
 
@@ -120,7 +162,7 @@ function settledShift({ totalS }: Refined, { meanS, standardErrorS }: Confidence
 }
 
 /**
- * 0.975 quantile of Student's t, by its expansion about the normal's: within 0.02 from four degrees of freedom on.
+ * 0.975 quantile of Student's t, by its expansion about the normal: within 0.05 from four degrees of freedom on, 0.01 from eight.
  * Few blocks make resampling too sure of itself; their number less one serves as degrees of freedom.
  * @see Abramowitz and Stegun (1964) 26.7.5
  */

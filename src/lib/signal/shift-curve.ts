@@ -13,9 +13,11 @@ export const prepareTrace = (trace: Pick<Trace, 'tS' | 'value'>): PreparedTrace 
 /**
  * Pearson r of the two heart rates where they overlap when the wearable's stamps move by `shiftS`; the reference is
  * read linearly between its seconds.
- * @returns r NaN when fewer than 30 seconds overlap or one side is constant; n seconds compared
+ * Over both sides' valid seconds alone: masked normalised correlation (Padfield 2012) at this shift.
+ * @param leastPairs fewer seconds with a value on both sides give no correlation
+ * @returns r NaN when fewer overlap or one side is constant; n seconds compared
  */
-export function correlationAtShift(reference: PreparedTrace, wearable: PreparedTrace, shiftS: number): { r: number; n: number } {
+export function correlationAtShift(reference: PreparedTrace, wearable: PreparedTrace, shiftS: number, leastPairs = LEAST_PAIRS): { r: number; n: number } {
 	const offset = wearable.startS + shiftS - reference.startS;
 	const whole = Math.floor(offset);
 	const part = offset - whole;
@@ -41,7 +43,7 @@ export function correlationAtShift(reference: PreparedTrace, wearable: PreparedT
 		yy += dy * (y - my);
 		xy += dx * (y - my);
 	}
-	return { r: n >= LEAST_PAIRS && xx > 0 && yy > 0 ? xy / Math.sqrt(xx * yy) : NaN, n };
+	return { r: n >= leastPairs && xx > 0 && yy > 0 ? xy / Math.sqrt(xx * yy) : NaN, n };
 }
 
 /** The curve from `fromS` to `toS` (both included as far as the step allows). */
