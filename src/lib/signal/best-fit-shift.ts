@@ -132,8 +132,8 @@ function bySlopesAlone(r: SecondGrid, w: SecondGrid, first: Attempt | null, opti
 function estimateOf(r: SecondGrid, w: SecondGrid, { candidates, evidence, line }: Attempt): ShiftEstimate {
 	const { refined, confidence } = evidence;
 	const { code, sentence } = judge(evidence);
-	const shiftS = toMilliseconds(settledShift(refined, confidence));
-	const half = Math.hypot(SPREAD_FACTOR * 1.96 * confidence.standardErrorS, MODEL_HALF_WIDTH_S);
+	const shiftS = settledShift(refined, confidence);
+	const half = Math.hypot(SPREAD_FACTOR * student975(confidence.blocks - 1) * confidence.standardErrorS, MODEL_HALF_WIDTH_S);
 	const sentences = [sentence];
 	if (line) sentences.push(`The wearable reads ${lineWords(line)} throughout; the search allowed for it.`);
 	if (r.startS + r.value.length <= w.startS || w.startS + w.value.length <= r.startS) sentences.push('The stated times of the two recordings do not overlap, so their shapes alone decided.');
@@ -141,7 +141,7 @@ function estimateOf(r: SecondGrid, w: SecondGrid, { candidates, evidence, line }
 	if (zone) sentences.push(`The shift looks like ${zone}.`);
 	return {
 		bestFitShiftS: shiftS,
-		ci95: [toMilliseconds(shiftS - half), toMilliseconds(shiftS + half)],
+		ci95: [shiftS - half, shiftS + half],
 		reliable: code === 'reliable',
 		reasonCode: code,
 		reason: sentences.join(' '),
