@@ -55,19 +55,39 @@ export function resampleShift(members: BlockSums[], shiftsS: number[], totalOf: 
 	return { meanS, standardErrorS: (at(0.84) - at(0.16)) / 2, spread90S: at(0.95) - at(0.05) };
 }
 
-/** Share of resamples in which the first shift agrees more than every other; 1 when it has no rival. */
+/** A rival that overlaps less than this share of what the first does cannot be judged by its own overlap alone. */
+const RIVAL_OVERLAP = 0.5;
+
+/**
+ * Share of resamples in which the first shift agrees more than every other; 1 when it has no rival.
+ *
+ * A rival is met on the blocks that it overlaps, so that a session of like repeats, which matches itself one repeat on,
+ * is not won by the longer overlap alone; a rival of little overlap is met on all.
+ */
 export function winShare(rivals: BlockSums): number {
+	const { sum, count, blocks, shifts } = rivals;
+	const seconds = new Float64Array(shifts);
+	for (let block = 0; block < blocks; block++) for (let s = 0; s < shifts; s++) seconds[s] += count[block * shifts + s];
+	// How far the first is ahead of each rival, block by block.
+	const ahead = new Float64Array(blocks * shifts);
+	for (let block = 0; block < blocks; block++) {
+		const first = block * shifts;
+		for (let s = 1; s < shifts; s++) {
+			const met = seconds[s] < RIVAL_OVERLAP * seconds[0] || count[first] === 0 ? 1 : Math.min(1, count[first + s] / count[first]);
+			ahead[first + s] = sum[first] * met - sum[first + s];
+		}
+	}
 	const random = randomBits(SEED);
-	const drawn = new Uint32Array(rivals.blocks);
-	const totals = new Float64Array(rivals.shifts);
+	const drawn = new Uint32Array(blocks);
+	const totals = new Float64Array(shifts);
 	let wins = 0;
 	for (let b = 0; b < RESAMPLES; b++) {
 		draw(drawn, random);
 		totals.fill(0);
-		for (let k = 0; k < drawn.length; k++)
-			for (let s = 0, at = drawn[k] * rivals.shifts; s < rivals.shifts; s++, at++) totals[s] += rivals.sum[at];
+		for (let k = 0; k < drawn.length; k++) for (let s = 1, at = drawn[k] * shifts + 1; s < shifts; s++, at++) totals[s] += ahead[at];
 		let won = true;
-		for (let s = 1; s < rivals.shifts; s++) if (totals[s] >= totals[0]) won = false;
+		// Rounding alone wins nothing.
+		for (let s = 1; s < shifts; s++) if (totals[s] <= 1e-9 * seconds[0]) won = false;
 		if (won) wins++;
 	}
 	return wins / RESAMPLES;
