@@ -1,16 +1,15 @@
 import type { Handle, HandleServerError, ServerInit } from '@sveltejs/kit';
 import { sequence } from '@sveltejs/kit/hooks';
 import { building } from '$app/environment';
-import pino from 'pino';
-import { authOf } from '$lib/server/auth/auth';
+import { AUTH_PATH, authOf } from '$lib/server/auth/auth';
 import { userOfSession } from '$lib/server/auth/session-user';
 import { actorFrom, membershipsOf, TEAM_COOKIE } from '$lib/server/auth/membership';
 import { openDatabase, type OpenDatabase } from '$lib/server/db/client';
-import { domainErrorOf } from '$lib/server/http/problem';
+import { log } from '$lib/server/http/log';
+import { domainErrorOf, FAULT_SENTENCE } from '$lib/server/http/problem';
 import { startWorker } from '$lib/server/jobs/worker';
 import { settings } from '$lib/server/settings';
 
-const log = pino({ name: 'nonius', base: undefined });
 let database: OpenDatabase | null = null;
 
 export const init: ServerInit = async () => {
@@ -33,7 +32,10 @@ const withDatabase: Handle = ({ event, resolve }) => {
 	return resolve(event);
 };
 
-const withAuth: Handle = (input) => authOf(input.event.locals.db, input.event.locals.settings).handle(input);
+const withAuth: Handle = ({ event, resolve }) => {
+	if (!event.url.pathname.startsWith(`${AUTH_PATH}/`)) return resolve(event);
+	return authOf(event.locals.db, event.locals.settings).answer(event);
+};
 
 const withActor: Handle = async ({ event, resolve }) => {
 	const { locals, cookies } = event;
@@ -49,6 +51,8 @@ const withActor: Handle = async ({ event, resolve }) => {
 	response.headers.set('x-content-type-options', 'nosniff');
 	response.headers.set('referrer-policy', 'same-origin');
 	response.headers.set('x-frame-options', 'DENY');
+	// What a signed-in person saw is asked for again after signing out.
+	if (locals.user && !response.headers.has('cache-control')) response.headers.set('cache-control', 'private, no-cache');
 	return response;
 };
 
@@ -64,7 +68,7 @@ export const handleError: HandleServerError = ({ error, event, status, message }
 				? 'There is nothing at this address. Check it, or go back to your studies.'
 				: status < 500
 					? message
-					: 'Something went wrong on our side. What you had saved is safe; try again, and tell an owner if it stays.'
+					: FAULT_SENTENCE
 	};
 };
 

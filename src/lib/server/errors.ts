@@ -2,7 +2,7 @@
  * The closed set of domain errors. Each carries a sentence for the user; one place turns them into pages,
  * problem+json (RFC 9457) and exit codes. An expected outcome ("not determinable") is a value, not an error.
  */
-export type DomainErrorKind = 'not-found' | 'not-allowed' | 'conflict' | 'unreadable' | 'invalid' | 'signed-out';
+export type DomainErrorKind = 'not-found' | 'not-allowed' | 'conflict' | 'unreadable' | 'invalid' | 'signed-out' | 'unavailable';
 
 export const STATUS_OF: Record<DomainErrorKind, number> = {
 	'not-found': 404,
@@ -10,7 +10,9 @@ export const STATUS_OF: Record<DomainErrorKind, number> = {
 	conflict: 409,
 	unreadable: 422,
 	invalid: 400,
-	'signed-out': 401
+	'signed-out': 401,
+	/** Something that this server needs (mail, a provider) does not answer. */
+	unavailable: 503
 };
 
 export class DomainError extends Error {
@@ -35,3 +37,4 @@ export const notFound = (what: string) =>
 export const notAllowed = (sentence: string) => new DomainError('not-allowed', sentence);
 export const conflict = (sentence: string, detail: Record<string, unknown> = {}) => new DomainError('conflict', sentence, detail);
 export const invalid = (sentence: string, detail: Record<string, unknown> = {}) => new DomainError('invalid', sentence, detail);
+export const unavailable = (sentence: string, cause: unknown) => new DomainError('unavailable', sentence, {}, { cause });

@@ -4,7 +4,7 @@ import { redirect } from '@sveltejs/kit';
 import type { LayoutServerLoad } from './$types';
 
 export const load: LayoutServerLoad = async ({ locals, url }) => {
-	if (!locals.user) redirect(303, '/signin');
+	if (!locals.user) redirect(303, `/signin?to=${encodeURIComponent(url.pathname + url.search)}`);
 	// Without a team there is one place to be: where teams are made and invitations accepted.
 	if (!locals.actor && !url.pathname.startsWith('/teams')) redirect(303, '/teams');
 	return page(() => ({

@@ -1,6 +1,7 @@
 /** One-click sign-in for demo people: only in demo mode, only from this very machine. */
 import { randomBytes } from 'node:crypto';
-import { asc, eq } from 'drizzle-orm';
+import { and, asc, eq, isNull, like } from 'drizzle-orm';
+import type { RequestEvent } from '@sveltejs/kit';
 import type { Role } from '../../roles';
 import type { Queryable } from '../db/client';
 import { authSessions, members, teams, users } from '../db/schema';
@@ -12,11 +13,26 @@ export const DEMO_DOMAIN = 'bramling.example';
 
 const LOOPBACK_CLIENT = /^(127\.\d+\.\d+\.\d+|::1|::ffff:127\.\d+\.\d+\.\d+)$/;
 
+/** Any of these says that somebody else's request was passed on. */
+const PROXY_HEADERS = ['forwarded', 'via', 'x-forwarded-for', 'x-forwarded-host', 'x-forwarded-proto', 'x-real-ip'];
+
 /** Does the request come from this machine, to this machine, in demo mode, without a proxy in between? */
 export function demoAllowed(settings: Pick<Settings, 'demo'>, clientAddress: string, headers: Headers): boolean {
 	const host = headers.get('host') ?? '';
 	const hostName = host.startsWith('[') ? host.slice(0, host.indexOf(']') + 1) : host.split(':')[0];
-	return settings.demo && LOOPBACK_CLIENT.test(clientAddress) && isLoopback(hostName) && !headers.has('x-forwarded-for') && !headers.has('forwarded');
+	return settings.demo && LOOPBACK_CLIENT.test(clientAddress) && isLoopback(hostName) && !PROXY_HEADERS.some((name) => headers.has(name));
+}
+
+/** The same for a request as it came in. Who has gone meanwhile has no address and is nobody. */
+export function demoAllowedFor({ locals, request, getClientAddress }: Pick<RequestEvent, 'locals' | 'request' | 'getClientAddress'>): boolean {
+	if (!locals.settings.demo) return false;
+	let address: string;
+	try {
+		address = getClientAddress();
+	} catch {
+		return false;
+	}
+	return demoAllowed(locals.settings, address, request.headers);
 }
 
 export interface DemoPerson {
@@ -34,8 +50,9 @@ export async function demoPeople(db: Queryable): Promise<DemoPerson[]> {
 		.from(users)
 		.innerJoin(members, eq(members.userId, users.id))
 		.innerJoin(teams, eq(teams.id, members.teamId))
+		.where(and(like(users.email, `%@${DEMO_DOMAIN}`), isNull(members.leftAt)))
 		.orderBy(asc(members.role), asc(members.initials));
-	return rows.filter((r) => r.email.endsWith(`@${DEMO_DOMAIN}`)).map((r) => ({ ...r, name: r.name ?? r.initials }));
+	return rows.map((r) => ({ ...r, name: r.name ?? r.initials }));
 }
 
 /**

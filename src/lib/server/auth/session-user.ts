@@ -4,7 +4,7 @@ import { and, eq, gt } from 'drizzle-orm';
 import type { Queryable } from '../db/client';
 import { authSessions, users } from '../db/schema';
 import type { Settings } from '../settings';
-import { SESSION_DAYS, sessionCookieName } from './auth';
+import { isSecure, SESSION_DAYS, sessionCookieName } from './auth';
 import type { SignedInUser } from './membership';
 
 const DAY_MS = 86_400_000;
@@ -24,7 +24,7 @@ export async function userOfSession(db: Queryable, cookies: Cookies, settings: S
 	if (left > DAY_MS && left < (SESSION_DAYS - 1) * DAY_MS) {
 		const expires = new Date(Date.now() + SESSION_DAYS * DAY_MS);
 		await db.update(authSessions).set({ expires }).where(eq(authSessions.sessionToken, token));
-		cookies.set(name, token, { path: '/', httpOnly: true, sameSite: 'lax', secure: settings.origin.startsWith('https:'), expires });
+		cookies.set(name, token, { path: '/', httpOnly: true, sameSite: 'lax', secure: isSecure(settings), expires });
 	}
 	const { expires: _expires, ...user } = found;
 	return user;

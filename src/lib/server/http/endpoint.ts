@@ -1,16 +1,19 @@
 /** Wrappers that every route uses: domain errors become problem+json for programs and pages for people. */
-import { error, redirect, type RequestEvent } from '@sveltejs/kit';
-import { domainErrorOf, problemResponse } from './problem';
+import { error, isHttpError, isRedirect, redirect, type RequestEvent } from '@sveltejs/kit';
+import { log } from './log';
+import { domainErrorOf, faultResponse, problemResponse } from './problem';
 
-/** An API handler whose domain errors are answered as problem+json. */
+/** An API handler whose errors, the sender's and our own, are answered as problem+json. */
 export function endpoint<Event extends RequestEvent>(handler: (event: Event) => Response | Promise<Response>) {
 	return async (event: Event): Promise<Response> => {
 		try {
 			return await handler(event);
 		} catch (thrown) {
 			const known = domainErrorOf(thrown);
-			if (!known) throw thrown;
-			return problemResponse(known);
+			if (known) return problemResponse(known);
+			if (isHttpError(thrown) || isRedirect(thrown)) throw thrown;
+			log.error({ err: thrown, method: event.request.method, path: event.url.pathname }, 'a request failed');
+			return faultResponse();
 		}
 	};
 }

@@ -15,9 +15,33 @@ export function domainErrorOf(thrown: unknown): DomainError | null {
 	return null;
 }
 
+/** What is said when the fault is ours: nothing of what went wrong inside, and what is safe. */
+export const FAULT_SENTENCE = 'Something went wrong on our side. What you had saved is safe; try again, and tell an owner if it stays.';
+
+/** RFC 9457 leaves `title` to the type; without a type of its own it is the status in words. */
+const TITLE: Record<number, string> = {
+	400: 'Bad Request',
+	401: 'Unauthorized',
+	403: 'Forbidden',
+	404: 'Not Found',
+	409: 'Conflict',
+	422: 'Unprocessable Content',
+	500: 'Internal Server Error',
+	503: 'Service Unavailable'
+};
+
+function problem(status: number, detail: string, more: Record<string, unknown> = {}): Response {
+	return new Response(JSON.stringify({ ...more, type: 'about:blank', title: TITLE[status], status, detail }), {
+		status,
+		headers: { 'content-type': 'application/problem+json', 'cache-control': 'no-store' }
+	});
+}
+
+/** `code` is the kind of the error, for programs; further fields are the error's own. */
 export function problemResponse(error: DomainError): Response {
-	return new Response(
-		JSON.stringify({ type: 'about:blank', title: error.kind, status: error.status, detail: error.sentence, ...error.detail }),
-		{ status: error.status, headers: { 'content-type': 'application/problem+json', 'cache-control': 'no-store' } }
-	);
+	return problem(error.status, error.sentence, { code: error.kind, ...error.detail });
+}
+
+export function faultResponse(): Response {
+	return problem(500, FAULT_SENTENCE, { code: 'fault' });
 }
