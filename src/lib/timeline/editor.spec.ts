@@ -12,7 +12,7 @@ interface Asked {
 }
 
 /** An editor whose requests are answered by `answer`; by default every edit is taken. */
-function editorOn(document: SessionDocument, answer: (asked: Asked) => Response = ({ body }) => Response.json({ version: Number(body.baseVersion) + 1 }), store = new PretendStore()) {
+function editorOn(document: SessionDocument, answer: (asked: Asked) => Response = ({ body }) => Response.json({ version: Number(body.baseVersion) + 1, state: 'annotating' }), store = new PretendStore()) {
 	const asked: Asked[] = [];
 	const timers = new PretendTimers();
 	const editor = new TimelineEditor(document, sessionTraces(), {
@@ -43,6 +43,13 @@ describe('the editor on the page', () => {
 		expect(editor.saveStatus).toMatch(/^saved \d\d:07:52$/);
 		expect(editor.state.alignments.ostrel.version).toBe(2);
 		expect(editor.undoLabel).toBe('offset 2 Ostrel +0.1 s');
+	});
+
+	it('shows how far the session has come by an edit, without loading it again', async () => {
+		const { editor } = editorOn(sessionDocument({ state: 'aligned' }));
+		editor.run('nudgeForward');
+		await settled();
+		expect(editor.state.document.state).toBe('annotating');
 	});
 
 	it('sends nothing while a trace is dragged and one edit when it is let go', async () => {
@@ -127,7 +134,7 @@ describe('the editor on the page', () => {
 		let reachable = false;
 		const { editor, asked, timers } = editorOn(sessionDocument(), ({ url, body }) => {
 			if (!reachable) throw new TypeError('Failed to fetch');
-			return url.endsWith('/submit') ? Response.json(handed) : Response.json({ version: Number(body.baseVersion) + 1 });
+			return url.endsWith('/submit') ? Response.json(handed) : Response.json({ version: Number(body.baseVersion) + 1, state: 'annotating' });
 		});
 		editor.run('nudgeForward');
 		await settled();

@@ -5,7 +5,7 @@ import { commandNamed, type CommandName } from './commands';
 import { browserEditStore } from './edit-store';
 import { FigureMemory, liveFigures, type WearableFigures } from './figures';
 import { alignmentContent, changesBetween, setChanged, tagContent } from './history';
-import type { SessionDocument } from './model';
+import type { SessionDocument, SessionState } from './model';
 import { SaveQueue, saveStatusInWords, type Content, type EditStore, type SaveStatus, type Stopped, type Subject } from './saving';
 import { actOnSession, fetchDocument, sendEdit, type Fetch, type Outcome, type SessionAct } from './session-requests';
 import { openState, withDocument, type EditorState } from './state';
@@ -60,7 +60,7 @@ export class TimelineEditor {
 			now: this.now,
 			later: options.later ?? laterByTimer,
 			onChange: () => this.showSaving(),
-			onSaved: (subject, version) => this.setSavedVersion(subject, version)
+			onSaved: (subject, version, state) => this.noteSaved(subject, version, state)
 		});
 		this.rememberVersions(document);
 		this.takeBackUp(this.queue.recover());
@@ -218,7 +218,8 @@ export class TimelineEditor {
 		}
 	}
 
-	private setSavedVersion(subject: Subject, version: number): void {
+	private noteSaved(subject: Subject, version: number, state: SessionState): void {
+		if (state !== this.state.document.state) this.state = { ...this.state, document: { ...this.state.document, state } };
 		const id = subject.slice(subject.indexOf(' ') + 1);
 		const { tags, alignments } = this.state;
 		this.state = subject.startsWith('tag ')

@@ -6,7 +6,7 @@
  * One edit is on its way at a time. Of several edits of one thing that wait, only the last is sent. An edit whose
  * answer was lost is sent again as it was: the server knows it by its content and its base version.
  */
-import type { AlignmentContent, TagContent } from './model';
+import type { AlignmentContent, SessionState, TagContent } from './model';
 
 export type Content = ({ of: 'tag' } & TagContent) | ({ of: 'alignment' } & AlignmentContent);
 
@@ -27,7 +27,8 @@ export interface TheirVersion {
 }
 
 export type SendResult =
-	| { ok: true; version: number }
+	/** `state` is how far the session has come by it. */
+	| { ok: true; version: number; state: SessionState }
 	/** Somebody else's version stands there. */
 	| { ok: false; why: 'conflict'; theirs: TheirVersion }
 	/** The server will never take this one; the sentence says why. */
@@ -76,7 +77,7 @@ export interface SaveQueueOptions {
 	/** Something about the status or the stopped edits has changed. */
 	onChange: () => void;
 	/** An edit was acknowledged under this version. */
-	onSaved?: (subject: Subject, version: number) => void;
+	onSaved?: (subject: Subject, version: number, state: SessionState) => void;
 }
 
 const RETRY_MS = [1000, 2000, 5000, 10_000, 20_000, 30_000];
@@ -215,7 +216,7 @@ export class SaveQueue {
 			this.versions.set(edit.subject, result.version);
 			if (entry.next === null) this.entries.delete(edit.subject);
 			else Object.assign(entry, { sent: null, baseVersion: result.version });
-			this.options.onSaved?.(edit.subject, result.version);
+			this.options.onSaved?.(edit.subject, result.version, result.state);
 		} else if (result.why === 'conflict') {
 			this.waitingFor = null;
 			entry.stopped = { theirs: result.theirs, sentence: null };

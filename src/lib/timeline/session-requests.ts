@@ -1,5 +1,5 @@
 /** What the page asks of the server for one session, and how answers become outcomes. */
-import type { SessionDocument } from './model';
+import type { SessionDocument, SessionState } from './model';
 import type { Content, EditToSend, SendResult, TheirVersion } from './saving';
 
 export type Fetch = (input: string, init?: RequestInit) => Promise<Response>;
@@ -49,8 +49,8 @@ export async function sendEdit(fetch: Fetch, sessionId: string, { subject, baseV
 		return { ok: false, why: 'no connection' };
 	}
 	if (response.ok) {
-		const body = (await response.json()) as { version: number };
-		return { ok: true, version: body.version };
+		const { version, state } = (await response.json()) as { version: number; state: SessionState };
+		return { ok: true, version, state };
 	}
 	if (response.status === 401) return { ok: false, why: 'signed out' };
 	if (response.status >= 500 || response.status === 408 || response.status === 429) return { ok: false, why: 'server fault' };

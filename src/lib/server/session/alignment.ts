@@ -9,8 +9,7 @@ import { alignments, deviceModels, members, recordings } from '../db/schema';
 import { conflict, invalid, notFound } from '../errors';
 import { record } from '../record/audit';
 import { holdSession, requireOpen } from './access';
-import { settleSessionState } from './state';
-import { noteEdit } from './touch';
+import { noteEdit, type SavedEdit } from './edit';
 
 export const AlignmentToSave = z.object({
 	offsetS: z.number().min(-1e10).max(1e10),
@@ -33,7 +32,7 @@ type Stored = typeof alignments.$inferSelect;
  * @param baseVersion the version that the edit was made on; 0 = none
  * @throws DomainError conflict with `theirs` when another version stands on top of the base
  */
-export async function saveAlignment(db: Queryable, actor: Actor, recordingId: string, baseVersion: number, wanted: AlignmentToSave): Promise<{ version: number }> {
+export async function saveAlignment(db: Queryable, actor: Actor, recordingId: string, baseVersion: number, wanted: AlignmentToSave): Promise<SavedEdit> {
 	authorise(actor, 'session.align');
 	return db.transaction(async (tx) => {
 		const seen = await wearableOf(tx, actor, recordingId);
@@ -46,9 +45,10 @@ export async function saveAlignment(db: Queryable, actor: Actor, recordingId: st
 		const versions = await tx.select().from(alignments).where(eq(alignments.recordingId, recordingId)).orderBy(desc(alignments.version));
 		const current = versions.at(0) ?? null;
 		const sentBefore = versions.find((v) => v.version === baseVersion + 1);
-		if (sentBefore?.authorId === actor.memberId && sameOffset(sentBefore, wanted)) return { version: sentBefore.version };
+		if (sentBefore?.authorId === actor.memberId && sameOffset(sentBefore, wanted)) return { version: sentBefore.version, state: session.state };
+		// What stands says the same already, whoever said it: nothing is lost, and there is nothing to choose.
+		if (current && sameOffset(current, wanted)) return { version: current.version, state: session.state };
 		if ((current?.version ?? 0) !== baseVersion) throw conflict(`The offset of ${recording.name} was changed meanwhile.`, { theirs: current && (await theirVersion(tx, current)) });
-		if (current && sameOffset(current, wanted)) return { version: current.version };
 		requireHonestMethod(wanted, current, versions);
 
 		const version = baseVersion + 1;
@@ -59,9 +59,7 @@ export async function saveAlignment(db: Queryable, actor: Actor, recordingId: st
 			subjectId: recordingId,
 			detail: { session: session.code, version, from: current && offsetWords(current), to: offsetWords(wanted) }
 		});
-		await noteEdit(tx, actor, session, false);
-		await settleSessionState(tx, actor.teamId, session.id);
-		return { version };
+		return { version, state: await noteEdit(tx, actor, session, false) };
 	});
 }
 

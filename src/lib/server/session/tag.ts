@@ -8,8 +8,7 @@ import { annotations, annotationVersions, members, recordings, tagKinds } from '
 import { conflict, invalid, notFound } from '../errors';
 import { record } from '../record/audit';
 import { holdSession, requireOpen } from './access';
-import { settleSessionState } from './state';
-import { noteEdit } from './touch';
+import { noteEdit, type SavedEdit } from './edit';
 
 /** Shortest tag, s, with slack for times that were counted forth and back between two clocks. */
 const SHORTEST_S = 2 - 1e-6;
@@ -37,7 +36,7 @@ type Stored = typeof annotationVersions.$inferSelect;
  * @param baseVersion the version that the edit was made on; 0 = the tag is new
  * @throws DomainError conflict with `theirs` when another version stands on top of the base
  */
-export async function saveTag(db: Queryable, actor: Actor, sessionId: string, tagId: string, baseVersion: number, wanted: TagToSave): Promise<{ version: number }> {
+export async function saveTag(db: Queryable, actor: Actor, sessionId: string, tagId: string, baseVersion: number, wanted: TagToSave): Promise<SavedEdit> {
 	authorise(actor, 'session.annotate');
 	return db.transaction(async (tx) => {
 		const session = await holdSession(tx, actor, sessionId);
@@ -54,9 +53,10 @@ export async function saveTag(db: Queryable, actor: Actor, sessionId: string, ta
 		const versions = await tx.select().from(annotationVersions).where(eq(annotationVersions.annotationId, tagId)).orderBy(desc(annotationVersions.version));
 		const current = versions.at(0) ?? null;
 		const sentBefore = versions.find((v) => v.version === baseVersion + 1);
-		if (sentBefore?.authorId === actor.memberId && sameTag(sentBefore, wanted)) return { version: sentBefore.version };
+		if (sentBefore?.authorId === actor.memberId && sameTag(sentBefore, wanted)) return { version: sentBefore.version, state: session.state };
+		// What stands says the same already, whoever said it: nothing is lost, and there is nothing to choose.
+		if (current && sameTag(current, wanted)) return { version: current.version, state: session.state };
 		if ((current?.version ?? 0) !== baseVersion) throw conflict('This tag was changed meanwhile.', { theirs: current && (await theirVersion(tx, current, wanted.recordingId)) });
-		if (current && sameTag(current, wanted)) return { version: current.version };
 
 		const version = baseVersion + 1;
 		const { recordingId: _, ...content } = wanted;
@@ -67,9 +67,7 @@ export async function saveTag(db: Queryable, actor: Actor, sessionId: string, ta
 			subjectId: tagId,
 			detail: { session: session.code, version, from: current && tagWords(current), to: tagWords(wanted) }
 		});
-		await noteEdit(tx, actor, session, true);
-		await settleSessionState(tx, actor.teamId, session.id);
-		return { version };
+		return { version, state: await noteEdit(tx, actor, session, true) };
 	});
 }
 

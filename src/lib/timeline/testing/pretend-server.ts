@@ -23,14 +23,14 @@ export class PretendServer {
 		if (this.refusal !== null) return { ok: false, why: 'refused', sentence: this.refusal };
 		const stored = this.versions.get(edit.subject) ?? [];
 		const same = (v: { content: Content; author: string } | undefined) => v?.author === author && JSON.stringify(v.content) === JSON.stringify(edit.content);
-		if (same(stored[edit.baseVersion])) return { ok: true, version: edit.baseVersion + 1 };
+		if (same(stored[edit.baseVersion])) return { ok: true, version: edit.baseVersion + 1, state: 'annotating' };
 		if (stored.length !== edit.baseVersion) {
 			const last = stored[stored.length - 1];
 			const theirs: TheirVersion = { version: stored.length, content: last.content, authorInitials: last.author };
 			return { ok: false, why: 'conflict', theirs };
 		}
 		this.versions.set(edit.subject, [...stored, { content: edit.content, author }]);
-		return { ok: true, version: stored.length + 1 };
+		return { ok: true, version: stored.length + 1, state: 'annotating' };
 	}
 
 	newest(subject: Subject): Content | undefined {
