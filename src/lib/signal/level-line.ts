@@ -15,8 +15,8 @@ export interface LevelLine {
 const GAIN_LIMIT = 1.3;
 const BIAS_LIMIT_BPM = 30;
 /** A line this near to identity is taken for it: share of gain, and bpm at the mean. */
-const NEGLIGIBLE_GAIN = 0.025;
-const NEGLIGIBLE_BIAS_BPM = 2;
+const NEGLIGIBLE_GAIN = 0.07;
+const NEGLIGIBLE_BIAS_BPM = 3.5;
 /** Residuals count by Geman and McClure's weights; their scale narrows from round to round, bpm. */
 const SCALES = [20, 14, 10, 8, 7, 7];
 /** Spread of levels below which the gain is held at 1, bpm: a level session shows none. */
