@@ -39,6 +39,8 @@ const ENOUGH_S = 14_400;
 
 /** Coarse shifts within this are one and the same, s. */
 const SAME_PEAK_S = 15;
+/** A line taken out of the levels must leave at most this share of the disagreement. */
+const WORTHWHILE_SHARE = 0.75;
 
 /** What the rule of reliability looks at. */
 export interface Evidence {
@@ -109,7 +111,7 @@ function attempt(r: SecondGrid, w: SecondGrid, { withinS }: SearchOptions, line:
 		const fit = refined.fits.find((f) => f.smoother === refined.smoother);
 		const found = fit ? levelLine(fit.reference, worn, fit.shiftS, every) : null;
 		const again = found ? attempt(r, w, { withinS }, found) : null;
-		if (again && Math.abs(again.candidates[0].shiftS - candidates[0].shiftS) <= SAME_PEAK_S) return again;
+		if (again && Math.abs(again.candidates[0].shiftS - candidates[0].shiftS) <= SAME_PEAK_S && again.evidence.refined.loss <= WORTHWHILE_SHARE * refined.loss) return again;
 	}
 	const settled = candidates.map((c, i) => (i === 0 ? refined.plainS : leastWholeSecond(bare, worn, Math.round(c.shiftS), 4, every)));
 	const confidence = confidenceOf(bare, worn, refined, settled, Math.min(r.valid, w.valid), every);

@@ -14,9 +14,13 @@ export interface LevelLine {
 /** Devices read no further off than this throughout: beyond it the two are no pair. */
 const GAIN_LIMIT = 1.3;
 const BIAS_LIMIT_BPM = 30;
-/** A line this near to identity is taken for it: share of gain, and bpm at the mean. */
-const NEGLIGIBLE_GAIN = 0.07;
-const NEGLIGIBLE_BIAS_BPM = 3.5;
+/**
+ * A wearable that reads less than this off at the mean reads right for our purposes, bpm. Ups and downs that seem
+ * enlarged or reduced about a right mean are no sign of such a device: faults and smoothing leave them behind.
+ */
+const NEGLIGIBLE_BIAS_BPM = 3;
+/** A gain this near to 1 is not worth a word. */
+const NEGLIGIBLE_GAIN = 0.025;
 /** Residuals count by Geman and McClure's weights; their scale narrows from round to round, bpm. */
 const SCALES = [20, 14, 10, 8, 7, 7];
 /** Spread of levels below which the gain is held at 1, bpm: a level session shows none. */
@@ -78,5 +82,5 @@ function usable(line: LevelLine): LevelLine | null {
 	const { gain, meanReference, meanWearable } = line;
 	const bias = Math.abs(meanWearable - meanReference);
 	if (!(gain < GAIN_LIMIT && gain > 1 / GAIN_LIMIT && bias < BIAS_LIMIT_BPM)) return null;
-	return Math.abs(gain - 1) < NEGLIGIBLE_GAIN && bias < NEGLIGIBLE_BIAS_BPM ? null : line;
+	return bias < NEGLIGIBLE_BIAS_BPM ? null : line;
 }
