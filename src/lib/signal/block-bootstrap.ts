@@ -56,7 +56,7 @@ export function resampleShift(members: BlockSums[], shiftsS: number[], totalOf: 
 }
 
 /** A rival that overlaps less than this share of what the first does cannot be judged by its own overlap alone. */
-const RIVAL_OVERLAP = 0.5;
+const RIVAL_OVERLAP = 0.7;
 
 /**
  * Share of resamples in which the first shift agrees more than every other; 1 when it has no rival.
