@@ -91,7 +91,7 @@ async function addRecording(db: Database, house: BenchHouse, sessionId: string, 
 	return recording.id;
 }
 
-export const estimate = (bestFitShiftS: number, reliable: boolean): ShiftEstimate => ({
+const estimate = (bestFitShiftS: number, reliable: boolean): ShiftEstimate => ({
 	bestFitShiftS,
 	ci95: [bestFitShiftS - 0.4, bestFitShiftS + 0.4],
 	reliable,

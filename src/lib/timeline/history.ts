@@ -7,7 +7,7 @@ import type { EditorState } from './state';
 import type { Change, EditedParts, History, Step } from './step';
 
 /** Nudges no further apart than this become one step, ms. */
-export const MERGE_WITHIN_MS = 1500;
+const MERGE_WITHIN_MS = 1500;
 
 export const tagContent = ({ recordingId, kind, startS, endS, status, cleanedOverride, evidence, note, authorInitials }: Tag): TagContent => ({
 	recordingId,
@@ -50,7 +50,7 @@ export function changesBetween(before: EditedParts, after: EditedParts): Change[
 }
 
 /** Flat objects of plain values; an estimate inside is compared by identity. */
-export function sameContent(a: object, b: object): boolean {
+function sameContent(a: object, b: object): boolean {
 	const left = Object.entries(a);
 	const right = new Map(Object.entries(b));
 	return left.length === right.size && left.every(([key, value]) => Object.is(right.get(key), value));

@@ -21,7 +21,7 @@ export interface Stroke {
 	mod?: boolean;
 }
 
-export interface KeyBinding {
+interface KeyBinding {
 	stroke: Stroke;
 	command: CommandName;
 	places: readonly KeyPlace[];

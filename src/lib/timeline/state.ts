@@ -20,7 +20,7 @@ export interface AxisSpan {
 }
 
 /** A tag being made: its start is set, perhaps its end too; it has no kind yet. Times on the recording's own clock. */
-export interface TagDraft {
+interface TagDraft {
 	recordingId: string;
 	startS: number;
 	endS: number | null;

@@ -7,7 +7,7 @@ import { openState } from '../../timeline/state';
 import { sessionDocumentById } from './document';
 import { sessionTraces } from './traces';
 
-export interface WearableAgreement {
+interface WearableAgreement {
 	number: number;
 	name: string;
 	/** Null when nothing can be paired; `why` says the reason. */

@@ -11,7 +11,7 @@ import type { SessionState } from '../../timeline/model';
  *                                            └──► annotating (taken back)
  * In review and reviewed are closed: no tag and no offset changes.
  */
-export const CLOSED_STATES: readonly SessionState[] = ['in review', 'reviewed'];
+const CLOSED_STATES: readonly SessionState[] = ['in review', 'reviewed'];
 export const isClosed = (state: SessionState): boolean => CLOSED_STATES.includes(state);
 
 /** States from which a session can be handed to review. */

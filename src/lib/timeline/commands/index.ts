@@ -12,8 +12,8 @@ import * as trace from './trace';
 
 export { alignmentOf } from './offset';
 export { draftBetween, moveEdge, setKind } from './edge';
-export { goToTime, moveCursorBy, moveCursorTo, panTo, zoom } from './cursor';
-export { holdRecording, holdTrace } from './trace';
+export { goToTime, moveCursorTo, panTo, zoom } from './cursor';
+export { holdRecording } from './trace';
 export { holdTag, setNote } from './tag';
 export { closeBox, showAnalysis } from './shown';
 export { nudge, setOffset } from './offset';

@@ -21,7 +21,7 @@ export const holdTag =
 	};
 
 /** The tag of the held trace under the cursor: accepted before proposed. */
-export function tagAtCursor(state: EditorState): Tag | null {
+function tagAtCursor(state: EditorState): Tag | null {
 	const track = heldTrack(state);
 	const under = standingTags(state).filter((tag) => {
 		if (tag.recordingId !== track?.recordingId) return false;
