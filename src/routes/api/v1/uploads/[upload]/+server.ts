@@ -2,6 +2,7 @@ import { json } from '@sveltejs/kit';
 import { z } from 'zod';
 import { authorise } from '$lib/server/auth/actor';
 import { requireActor } from '$lib/server/auth/require';
+import { jsonBody } from '$lib/server/http/json-body';
 import { endpoint } from '$lib/server/http/endpoint';
 import { answerDevice, keepApart, placeInSession, takeOut } from '$lib/server/import/answers';
 import { databaseQueue } from '$lib/server/jobs/queue';
@@ -19,7 +20,7 @@ export const PATCH: RequestHandler = endpoint(async ({ locals, params, request }
 	const actor = requireActor(locals);
 	authorise(actor, 'recording.upload');
 	const uploadId = z.uuid().parse(params.upload);
-	const answer = Answer.parse(await request.json());
+	const answer = Answer.parse(await jsonBody(request));
 	const { db } = locals;
 	if (answer.act === 'device') return json({ settled: await answerDevice(db, databaseQueue, actor, uploadId, answer.deviceModelId) });
 	if (answer.act === 'keep-apart') await keepApart(db, actor, uploadId);

@@ -3,6 +3,7 @@ import { z } from 'zod';
 import { authorise } from '$lib/server/auth/actor';
 import { requireActor } from '$lib/server/auth/require';
 import { placementEnum } from '$lib/server/db/schema';
+import { jsonBody } from '$lib/server/http/json-body';
 import { endpoint } from '$lib/server/http/endpoint';
 import { addDevice } from '$lib/server/import/add-device';
 import { studyBySlug } from '$lib/server/import/study';
@@ -20,5 +21,5 @@ export const POST: RequestHandler = endpoint(async ({ locals, params, request })
 	const actor = requireActor(locals);
 	authorise(actor, 'study.edit');
 	const study = await studyBySlug(locals.db, actor, params.study);
-	return json({ deviceModelId: await addDevice(locals.db, actor, study.id, Device.parse(await request.json())) }, { status: 201 });
+	return json({ deviceModelId: await addDevice(locals.db, actor, study.id, Device.parse(await jsonBody(request))) }, { status: 201 });
 });

@@ -1,6 +1,7 @@
 import { z } from 'zod';
 import { authorise } from '$lib/server/auth/actor';
 import { requireActor } from '$lib/server/auth/require';
+import { jsonBody } from '$lib/server/http/json-body';
 import { endpoint } from '$lib/server/http/endpoint';
 import { describeSession } from '$lib/server/import/answers';
 import { studyBySlug } from '$lib/server/import/study';
@@ -17,6 +18,6 @@ export const PATCH: RequestHandler = endpoint(async ({ locals, params, request }
 	const actor = requireActor(locals);
 	authorise(actor, 'session.sort');
 	const study = await studyBySlug(locals.db, actor, params.study);
-	await describeSession(locals.db, actor, study.id, z.uuid().parse(params.session), Description.parse(await request.json()));
+	await describeSession(locals.db, actor, study.id, z.uuid().parse(params.session), Description.parse(await jsonBody(request)));
 	return new Response(null, { status: 204 });
 });
