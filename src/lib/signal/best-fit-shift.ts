@@ -52,6 +52,8 @@ export interface Evidence {
 	validS: number;
 	/** Share of the shorter trace that overlaps. */
 	overlapShare: number;
+	/** What was taken out of the wearable's levels before; null where it reads right. */
+	line: LevelLine | null;
 }
 
 export interface ShiftSearch {
@@ -92,8 +94,6 @@ export function searchBestFitShift(reference: Pick<Trace, 'tS' | 'value'>, weara
 interface Attempt {
 	candidates: ShiftCandidate[];
 	evidence: Evidence;
-	/** What was taken out of the wearable's levels before. */
-	line: LevelLine | null;
 }
 
 const isReliable = ({ evidence }: Attempt) => judge(evidence).code === 'reliable';
@@ -116,7 +116,7 @@ function attempt(r: SecondGrid, w: SecondGrid, { withinS }: SearchOptions, line:
 	const settled = candidates.map((c, i) => (i === 0 ? refined.plainS : leastWholeSecond(bare, worn, Math.round(c.shiftS), 4, every)));
 	const confidence = confidenceOf(bare, worn, refined, settled, Math.min(r.valid, w.valid), every);
 	const lead = candidates.length > 1 ? (candidates[0].score - candidates[1].score) * Math.sqrt(w.valid) : candidates[0].score * Math.sqrt(w.valid);
-	return { candidates, line, evidence: { lead, confidence, refined, validS: w.valid, overlapShare: confidence.overlapS / Math.max(1, Math.min(r.valid, w.valid)) } };
+	return { candidates, evidence: { lead, confidence, refined, line, validS: w.valid, overlapShare: confidence.overlapS / Math.max(1, Math.min(r.valid, w.valid)) } };
 }
 
 /**
@@ -131,8 +131,8 @@ function bySlopesAlone(r: SecondGrid, w: SecondGrid, first: Attempt | null, opti
 	return found && isReliable(found) && Math.abs(found.candidates[0].shiftS - bySlopes.shiftS) <= SAME_PEAK_S ? found : null;
 }
 
-function estimateOf(r: SecondGrid, w: SecondGrid, { candidates, evidence, line }: Attempt): ShiftEstimate {
-	const { refined, confidence } = evidence;
+function estimateOf(r: SecondGrid, w: SecondGrid, { candidates, evidence }: Attempt): ShiftEstimate {
+	const { refined, confidence, line } = evidence;
 	const { code, sentence } = judge(evidence);
 	const shiftS = settledShift(refined, confidence);
 	const half = Math.hypot(SPREAD_FACTOR * student975(confidence.blocks - 1) * confidence.standardErrorS, MODEL_HALF_WIDTH_S);
