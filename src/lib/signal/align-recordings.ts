@@ -2,11 +2,15 @@
 import { traceOf, type Recording } from '../formats/recording';
 import { searchBestFitShift } from './best-fit-shift';
 import { clockOffset, clocksAround, type ClockOffset } from './clock-offset';
+import { estimateInParts } from './estimate-shift';
+import type { Part } from './pause-split';
 import type { ShiftEstimate } from './shift';
 
 export interface RecordingAlignment extends ShiftEstimate {
 	/** How the clock offset was found; null where it is unknown. */
 	clock: ClockOffset | null;
+	/** Stretches of the wearable with shifts of their own, where a clock left paused time out; null where one shift serves. */
+	parts: Part[] | null;
 }
 
 /**
@@ -19,9 +23,12 @@ export interface RecordingAlignment extends ShiftEstimate {
 export function alignRecordings(reference: Pick<Recording, 'traces'>, wearable: Pick<Recording, 'traces'>): RecordingAlignment {
 	const r = traceOf(reference, 'heartRate') ?? NO_HEART_RATE;
 	const w = traceOf(wearable, 'heartRate') ?? NO_HEART_RATE;
-	let { estimate } = searchBestFitShift(r, w);
+	const { estimate: whole, parts } = estimateInParts(r, w);
+	// One offset cannot serve clocks that part at a pause.
+	if (parts) return { ...whole, clock: null, parts };
+	let estimate = whole;
 	const clock = clockOffset(reference.traces, wearable.traces, estimate.reliable ? estimate.bestFitShiftS : null);
-	if (!clock) return { ...estimate, clock: null };
+	if (!clock) return { ...estimate, clock: null, parts: null };
 	if (!estimate.reliable) {
 		// The clocks say where to look: the best-fit shift lies a wearable's lag before them.
 		const [earliestS, latestS] = clocksAround(0);
@@ -33,7 +40,8 @@ export function alignRecordings(reference: Pick<Recording, 'traces'>, wearable: 
 		clockOffsetS: clock.offsetS,
 		clockOffsetCi95: clock.ci95,
 		responseLagS: estimate.bestFitShiftS === null ? null : clock.offsetS - estimate.bestFitShiftS,
-		clock
+		clock,
+		parts: null
 	};
 }
 

@@ -2,7 +2,7 @@ import fc from 'fast-check';
 import { describe, expect, test } from 'vitest';
 import type { Trace } from '../formats/recording';
 import { NO_FAULTS, randomStream, simulateSession } from '../simulate';
-import { estimateBestFitShift } from './best-fit-shift';
+import { estimateBestFitShift } from './estimate-shift';
 import type { ShiftEstimate } from './shift';
 
 type Values = Pick<Trace, 'tS' | 'value'>;

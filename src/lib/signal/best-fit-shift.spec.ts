@@ -2,7 +2,7 @@ import fc from 'fast-check';
 import { describe, expect, test } from 'vitest';
 import type { Trace } from '../formats/recording';
 import { NO_FAULTS, simulateSession, type Activity } from '../simulate';
-import { estimateBestFitShift } from './best-fit-shift';
+import { estimateBestFitShift } from './estimate-shift';
 
 const moved = (trace: Trace, byS: number): Trace => ({ ...trace, tS: trace.tS.map((t) => t + byS) });
 const scaled = (trace: Trace, by: number): Trace => ({ ...trace, value: trace.value.map((v) => v * by) });

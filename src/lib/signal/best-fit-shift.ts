@@ -61,17 +61,12 @@ export interface ShiftSearch {
 	evidence: Evidence | null;
 }
 
-/** Estimates the best-fit shift. Never throws: what cannot be determined is said in the estimate. */
-export function estimateBestFitShift(reference: Pick<Trace, 'tS' | 'value'>, wearable: Pick<Trace, 'tS' | 'value'>): ShiftEstimate {
-	return searchBestFitShift(reference, wearable).estimate;
-}
-
 export interface SearchOptions {
 	/** Look only at shifts between these, s; all overlaps when left out. */
 	withinS?: readonly [number, number];
 }
 
-/** As `estimateBestFitShift`, with the evidence that the rule of reliability saw. */
+/** Searches one shift for the whole of both traces, with the evidence that the rule of reliability saw. Never throws. */
 export function searchBestFitShift(reference: Pick<Trace, 'tS' | 'value'>, wearable: Pick<Trace, 'tS' | 'value'>, options: SearchOptions = {}): ShiftSearch {
 	const r = heartRateGrid(reference);
 	const w = heartRateGrid(wearable);

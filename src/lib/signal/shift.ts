@@ -19,7 +19,7 @@ export interface ShiftEstimate {
 	/** 95 % interval of the best-fit shift, s. */
 	ci95: [number, number] | null;
 	reliable: boolean;
-	/** `reliable`, `too-short`, `no-overlap`, `several-peaks`, `flat`, `low-agreement`, `at-edge`, `wide-interval`, ... */
+	/** `reliable`, `too-short`, `no-overlap`, `several-peaks`, `flat`, `low-agreement`, `at-edge`, `wide-interval`, `paused-clock`, ... */
 	reasonCode: string;
 	/** One plain sentence, with the remedy where the estimate is not reliable. */
 	reason: string;
