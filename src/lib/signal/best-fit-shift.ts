@@ -39,6 +39,8 @@ const ENOUGH_S = 14_400;
 
 /** Coarse shifts within this are one and the same, s. */
 const SAME_PEAK_S = 15;
+/** With a line taken out, like warm-ups of two strangers match over a few minutes: so many common seconds are needed. */
+const LEAST_OVERLAP_WITH_LINE_S = 900;
 /** A line taken out of the levels must leave at most this share of the disagreement. */
 const WORTHWHILE_SHARE = 0.75;
 
@@ -132,7 +134,7 @@ function estimateOf(r: SecondGrid, w: SecondGrid, { candidates, evidence }: Atte
 	const shiftS = settledShift(refined, confidence);
 	const half = Math.hypot(SPREAD_FACTOR * student975(confidence.blocks - 1) * confidence.standardErrorS, MODEL_HALF_WIDTH_S);
 	const sentences = [sentence];
-	if (line) sentences.push(`The wearable reads ${lineWords(line)} throughout; the search allowed for it.`);
+	if (line && code !== 'levels-apart') sentences.push(`The wearable reads ${lineWords(line)} throughout; the search allowed for it.`);
 	if (r.startS + r.value.length <= w.startS || w.startS + w.value.length <= r.startS) sentences.push('The stated times of the two recordings do not overlap, so their shapes alone decided.');
 	const zone = zoneWords(shiftS);
 	if (zone) sentences.push(`The shift looks like ${zone}.`);
@@ -171,12 +173,14 @@ function student975(degrees: number): number {
 
 /** The rule of reliability: every part must hold; the first that does not gives the reason. */
 export function judge(evidence: Evidence): { code: string; sentence: string } {
-	const { lead, confidence, refined } = evidence;
+	const { lead, confidence, refined, line } = evidence;
 	if (confidence.overlapS < LEAST_OVERLAP_S) return { code: 'no-overlap', sentence: 'Not determinable: at the best shift the traces hardly overlap. Check that both belong to the same session, or place the offset by hand.' };
 	if (confidence.agreement < LEAST_AGREEMENT) return { code: 'low-agreement', sentence: 'Not reliable: even at the best shift the two heart rates agree for less than half of the time. Check that both belong to the same session; a tag over long faults helps the eye.' };
 	if (lead < LEAST_LEAD || confidence.win < LEAST_WIN) return { code: 'several-peaks', sentence: 'Not reliable: another shift fits nearly as well. Compare the candidates at a break or an effort and choose by eye.' };
 	if (refined.atEdge) return { code: 'at-edge', sentence: 'Not reliable: the best fit lies at the edge of the close search. Compare the candidates by eye.' };
 	if (confidence.spread90S > WIDEST_SPREAD_S) return { code: 'wide-interval', sentence: 'Not reliable: the session is too even to place it within a few seconds. A break or a hard effort near start and end would help; place it by eye.' };
+	if (line && confidence.overlapS < LEAST_OVERLAP_WITH_LINE_S)
+		return { code: 'levels-apart', sentence: `Not reliable: the wearable reads ${lineWords(line)}, and ${Math.round(confidence.overlapS / 60)} min are too few to tell that from another wearer's recording. Check that both files belong to the same session, and place it by eye.` };
 	return { code: 'reliable', sentence: 'Reliable: one shift fits clearly better than all others, with a narrow interval.' };
 }
 
