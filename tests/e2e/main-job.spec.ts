@@ -6,7 +6,7 @@ import { readFileSync, existsSync, readdirSync } from 'node:fs';
 import { join } from 'node:path';
 import AxeBuilder from '@axe-core/playwright';
 import { expect, test, type Page } from '@playwright/test';
-import { focusBench, origin, saved, signInAs } from './steps';
+import { focusBench, offsetOf, origin, saved, signInAs } from './steps';
 
 const STUDY = 'autumn-trail-study';
 const SAMPLE = join(import.meta.dirname, '../../fixtures/sample-session');
@@ -65,7 +65,6 @@ async function importFiles(page: Page, study: string, files: string[]): Promise<
 
 test('from files on disk to reviewed figures and exported pairs, by keyboard', async ({ page, browser }) => {
 	test.setTimeout(240_000);
-	const slider = page.getByRole('slider', { name: 'Offset' });
 	await signInAs(page, 'RT');
 
 	await test.step('drop the files of one session', async () => {
@@ -83,7 +82,7 @@ test('from files on disk to reviewed figures and exported pairs, by keyboard', a
 				async () => {
 					await page.goto(`${origin()}/studies/${STUDY}/sessions/S25`);
 					await expect(page.getByRole('application')).toBeVisible();
-					return Number(await slider.getAttribute('aria-valuenow'));
+					return offsetOf(page);
 				},
 				{ timeout: 40_000 }
 			)
@@ -92,16 +91,15 @@ test('from files on disk to reviewed figures and exported pairs, by keyboard', a
 	});
 
 	await test.step('align by keyboard: nudge away, put at the peak, lock', async () => {
-		await focusBench(page);
-		await page.keyboard.press('1');
-		const proposed = Number(await slider.getAttribute('aria-valuenow'));
+		await focusBench(page, 1);
+		const proposed = await offsetOf(page);
 		await page.keyboard.press('Shift+.');
 		await page.keyboard.press('.');
-		await expect.poll(async () => Number(await slider.getAttribute('aria-valuenow'))).toBeCloseTo(proposed + 1.1, 1);
+		await expect.poll(() => offsetOf(page)).toBeCloseTo(proposed + 1.1, 1);
 		await page.keyboard.press('Control+z');
 		await page.keyboard.press('Control+z');
 		await page.keyboard.press('p');
-		await expect.poll(async () => Number(await slider.getAttribute('aria-valuenow'))).toBeCloseTo(proposed, 1);
+		await expect.poll(() => offsetOf(page)).toBeCloseTo(proposed, 1);
 		await page.keyboard.press('l');
 		await page.keyboard.press('.');
 		await expect(page.getByText(/locked/i).first()).toBeVisible();
@@ -201,7 +199,7 @@ test('from files on disk to reviewed figures and exported pairs, by keyboard', a
 		expect(await shownFigure(page, 'Bias', 0)).toBe(signed(primary.bias, 1));
 		expect(await shownFigure(page, 'Mean abs. error bpm', 0)).toBe(fixed(primary.mae, 1));
 		expect(await shownFigure(page, 'Within ±5', 0)).toBe((primary.within5 * 100).toFixed(1));
-		await page.getByRole('radio', { name: 'Cleaned' }).click();
+		await page.getByRole('button', { name: 'Cleaned' }).click();
 		const cleaned = plainFigures(wrenna.filter((r) => r.cleaned));
 		expect(await shownFigure(page, 'Bias', 0)).toBe(signed(cleaned.bias, 1));
 		expect(cleaned.n).toBeLessThan(primary.n);
@@ -257,19 +255,18 @@ test('the same journey with a real recording: a strap and a watch of one session
 		if (await question.isVisible()) await question.click();
 	}
 	await expect(page.getByRole('link', { name: 'S01' })).toBeVisible({ timeout: 30_000 });
-	const slider = page.getByRole('slider', { name: 'Offset' });
 	await expect
 		.poll(
 			async () => {
 				await page.goto(`${origin()}/studies/real-recordings/sessions/S01`);
 				await expect(page.getByRole('application')).toBeVisible();
 				await page.waitForTimeout(500);
-				return Number(await slider.getAttribute('aria-valuenow'));
+				return offsetOf(page);
 			},
 			{ timeout: 40_000 }
 		)
 		.toBeLessThan(-6);
-	const offsetS = Number(await slider.getAttribute('aria-valuenow'));
+	const offsetS = await offsetOf(page);
 	expect(offsetS).toBeGreaterThan(-12);
 	await focusBench(page);
 	await page.keyboard.press('l');

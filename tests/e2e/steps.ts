@@ -30,8 +30,22 @@ export async function mailTo(address: string): Promise<CaughtMail> {
 	return found as CaughtMail;
 }
 
-/** Gives the bench the focus, as the skip link does. */
-export const focusBench = (page: Page) => page.getByRole('application').focus();
+/**
+ * Gives the bench the focus, as the skip link does, once it answers to keys, and holds a wearable: pressing the number
+ * of what is held already is answered in words.
+ */
+export async function focusBench(page: Page, number = 1): Promise<void> {
+	await expect(async () => {
+		await page.getByRole('application').focus();
+		await page.keyboard.press(String(number));
+		await expect(page.getByRole('status').filter({ hasText: new RegExp(`^${number} .* is held`) })).toBeVisible({ timeout: 1000 });
+	}).toPass({ timeout: 20_000 });
+}
+
+/** The held wearable's offset as the rule says it; 0 while there is none. */
+export async function offsetOf(page: Page): Promise<number> {
+	return Number(await page.getByRole('slider', { name: 'Offset' }).getAttribute('aria-valuenow', { timeout: 2000 }).catch(() => '0'));
+}
 
 /** Everything typed has reached the server. */
 export async function saved(page: Page): Promise<void> {
