@@ -12,16 +12,20 @@ const root = join(dirname(fileURLToPath(import.meta.url)), '..', '..');
 const COMMANDS = ['start', 'test', 'bench', 'nonius', 'database', 'fuzz'];
 
 const [command, ...args] = process.argv.slice(2);
-if (!COMMANDS.includes(command)) fail(`Unknown command "${command ?? ''}". Known: ${COMMANDS.join(', ')}.`);
+if (!COMMANDS.includes(command)) fail(`Unknown command "${command ?? ''}". Known: ${COMMANDS.join(', ')}.`, 2);
 const [major, minor] = process.versions.node.split('.').map(Number);
 if (major < 20 || (major === 20 && minor < 11)) fail(`Nonius needs Node.js 20.11 or newer; this is ${process.versions.node}.`);
 
+// npm runs its scripts in the project's folder and tells where the user was.
+const calledFrom = process.env.npm_lifecycle_event === command && process.env.INIT_CWD ? process.env.INIT_CWD : process.cwd();
 process.chdir(root);
 installPackages();
 if (!existsSync('.svelte-kit/tsconfig.json')) run(process.execPath, ['node_modules/@sveltejs/kit/svelte-kit.js', 'sync'], 'svelte-kit sync');
 
 const { register } = await import(pathToFileURL(join(root, 'node_modules/tsx/dist/esm/api/index.mjs')).href);
 register();
+// Files are named from where the user stands; everything else works in the project.
+if (command === 'nonius' && existsSync(calledFrom)) process.chdir(calledFrom);
 const { main } = await import(pathToFileURL(join(root, 'src/cli', `${command}.ts`)).href);
 const status = await main(args);
 if (typeof status === 'number') process.exitCode = status;
@@ -33,8 +37,10 @@ function installPackages() {
 	if (existsSync(stamp) && readFileSync(stamp, 'utf8') === lock) return;
 	console.error('Installing packages from package-lock.json …');
 	const npm = process.env.npm_execpath;
-	if (npm && existsSync(npm)) run(process.execPath, [npm, 'ci', '--no-audit', '--no-fund'], 'npm ci');
-	else run('npm', ['ci', '--no-audit', '--no-fund'], 'npm ci');
+	// The tests' packages too, whatever NODE_ENV says: start and test share one set.
+	const argv = ['ci', '--include=dev', '--no-audit', '--no-fund'];
+	if (npm && existsSync(npm)) run(process.execPath, [npm, ...argv], 'npm ci');
+	else run('npm', argv, 'npm ci');
 	writeFileSync(stamp, lock);
 }
 
@@ -44,7 +50,7 @@ function run(file, argv, words) {
 	if (error || status !== 0) fail(`${words} did not succeed${error ? `: ${error.message}` : ` (exit status ${status})`}. Its own words are above.`);
 }
 
-function fail(sentence) {
+function fail(sentence, status = 1) {
 	console.error(sentence);
-	process.exit(1);
+	process.exit(status);
 }

@@ -22,5 +22,10 @@ export async function main([command, ...args]: string[]): Promise<number> {
 		console.error(command ? `Unknown command "${command}".\n\n${USAGE}` : USAGE);
 		return 2;
 	}
+	// Who reads only the first lines, as `head` does, closes the pipe: that is no fault.
+	process.stdout.on('error', (cause: NodeJS.ErrnoException) => {
+		if (cause.code !== 'EPIPE') throw cause;
+		process.exit();
+	});
 	return (await COMMANDS[command]())(args);
 }

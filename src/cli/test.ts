@@ -4,114 +4,127 @@
  *
  * `npm test -- --only unit,integration` runs some of the parts: check, unit, integration, e2e.
  */
-import { spawnSync } from 'node:child_process';
-import { existsSync, readFileSync, rmSync } from 'node:fs';
+import { rmSync } from 'node:fs';
 import { join } from 'node:path';
+import { whenAbandoned } from './local/abandoned';
 import { ensureBuilt } from './local/build';
 import { ensureChromium } from './local/chromium';
-import { dataFolder, PROJECT_ROOT } from './local/data-folder';
-import { ensureDatabase } from './local/local-parts';
-import { startCluster } from './local/postgres';
+import { dataFolder, makeFolder } from './local/data-folder';
+import { dropDatabases, ensureDatabase } from './local/local-parts';
+import { takeLock } from './local/lock';
+import { startCluster, type Cluster } from './local/postgres';
+import { run } from './local/run';
+import { RunningParts } from './local/running-parts';
 import { StopSentence } from './local/sentence';
+import { addRun, closingLine, playwrightCounts, succeeded, vitestCounts, type Tally } from './testing/tally';
 
 const PARTS = ['check', 'unit', 'integration', 'e2e'] as const;
 type Part = (typeof PARTS)[number];
 
-/** The migrated database from which every integration test copies its own. */
-export const TEMPLATE = 'nonius_test_template';
-
-interface Tally {
-	passed: number;
-	failed: number;
-	skipped: number;
-}
+/** Databases of tests begin so: the migrated one from which every test copies its own, and those copies. */
+const TEST_DATABASES = 'nonius_test_';
+const TEMPLATE = `${TEST_DATABASES}template`;
 
 export async function main(args: string[]): Promise<number> {
-	const only = args[0] === '--only' ? (args[1] ?? '').split(',') : [...PARTS];
-	const unknown = only.filter((p) => !PARTS.includes(p as Part));
-	if (unknown.length > 0 || (args.length > 0 && args[0] !== '--only')) {
-		console.error(`npm test takes --only with some of: ${PARTS.join(', ')}.`);
+	const chosen = partsOf(args);
+	if (chosen === null) {
+		console.error(`npm test takes --only with some of: ${PARTS.join(', ')}. Example: npm test -- --only unit,integration`);
 		return 2;
 	}
-	const wants = (part: Part) => only.includes(part);
+	const parts = new RunningParts();
+	const end = (status: number) => void parts.stopAll().then(() => process.exit(status));
+	for (const signal of ['SIGINT', 'SIGTERM', 'SIGHUP'] as const) process.on(signal, () => end(130));
+	whenAbandoned('test', () => end(130));
+
 	const tally: Tally = { passed: 0, failed: 0, skipped: 0 };
-	const folder = join(dataFolder(), 'test');
-	let stopCluster = () => {};
-	process.on('SIGINT', () => {
-		stopCluster();
-		process.exit(130);
-	});
+	const began = Date.now();
 	try {
-		if (wants('check')) {
-			step(tally, 'Lint', ['node_modules/eslint/bin/eslint.js', '.', '--max-warnings', '0']);
-			step(tally, 'Directions between rooms', ['node_modules/dependency-cruiser/bin/dependency-cruise.mjs', 'src', '--config', '.dependency-cruiser.cjs', '--output-type', 'err']);
-			step(tally, 'Sync', ['node_modules/@sveltejs/kit/svelte-kit.js', 'sync']);
-			step(tally, 'Types', ['node_modules/svelte-check/bin/svelte-check', '--tsconfig', './tsconfig.json', '--fail-on-warnings', '--output', 'human']);
-		}
-		if (wants('unit')) vitest(tally, 'unit', {});
-		if (wants('integration') || wants('e2e')) {
-			const cluster = await startCluster(join(folder, 'postgres'), say);
-			stopCluster = () => cluster.stop();
-			const env = { TEST_DATABASE_URL: cluster.baseUrl, TEST_DATABASE_TEMPLATE: TEMPLATE };
-			await ensureDatabase(cluster, TEMPLATE);
-			// The start command is tested as it is used, so the build comes first.
-			ensureBuilt(say);
-			if (wants('integration')) vitest(tally, 'integration', env);
-			if (wants('e2e')) {
-				const chromium = ensureChromium(say);
-				playwright(tally, { ...env, NONIUS_CHROMIUM: chromium });
-			}
-		}
+		await runParts(chosen, tally, parts);
 	} catch (cause) {
+		// Broken off by a signal: the process ends when everything is stopped.
+		if (parts.ending) await new Promise(() => undefined);
 		if (!(cause instanceof StopSentence)) throw cause;
 		console.error(cause.message);
 		tally.failed++;
 	} finally {
-		stopCluster();
+		await parts.stopAll();
 	}
-	console.log(`${tally.passed} passed, ${tally.failed} failed${tally.skipped ? `, ${tally.skipped} skipped` : ''}`);
-	return tally.failed > 0 || tally.passed === 0 ? 1 : 0;
+	console.log(`\n${((Date.now() - began) / 60_000).toFixed(1)} min`);
+	console.log(closingLine(tally));
+	return succeeded(tally) ? 0 : 1;
+}
+
+function partsOf(args: string[]): Part[] | null {
+	if (args.length === 0) return [...PARTS];
+	const named = args[0] === '--only' && args.length === 2 ? args[1].split(',') : [];
+	const known = PARTS.filter((part) => named.includes(part));
+	return known.length > 0 && known.length === named.length ? known : null;
+}
+
+async function runParts(chosen: Part[], tally: Tally, parts: RunningParts): Promise<void> {
+	const folder = makeFolder(join(dataFolder(), 'test'));
+	await parts.start(
+		() => takeLock(join(folder, 'test.pid'), { waiting: 'Another npm test is at work here; waiting a moment for it to end …', held: (pid) => `Tests are already running on this data folder (process ${pid}). Wait until they have ended, or set NONIUS_DATA to another folder.` }, say),
+		(giveBack) => giveBack()
+	);
+	if (chosen.includes('check')) {
+		await step(tally, 'Lint', ['node_modules/eslint/bin/eslint.js', '.', '--max-warnings', '0']);
+		await step(tally, 'Directions between rooms', ['node_modules/dependency-cruiser/bin/dependency-cruise.mjs', 'src', '--config', '.dependency-cruiser.cjs', '--output-type', 'err']);
+		await step(tally, 'Generated types', ['node_modules/@sveltejs/kit/svelte-kit.js', 'sync']);
+		await step(tally, 'Types', ['node_modules/svelte-check/bin/svelte-check', '--tsconfig', './tsconfig.json', '--fail-on-warnings', '--output', 'human']);
+	}
+	if (chosen.includes('unit')) await vitest(tally, folder, 'unit', {});
+	if (!chosen.includes('integration') && !chosen.includes('e2e')) return;
+
+	const cluster = await parts.start(() => startCluster(join(folder, 'postgres'), say, { throwAway: true }), (c) => c.stop());
+	const env = await freshTemplate(cluster);
+	// The start command is tested as it is used, so the build comes first.
+	await ensureBuilt(say);
+	if (chosen.includes('integration')) await vitest(tally, folder, 'integration', env);
+	if (chosen.includes('e2e')) await playwright(tally, folder, { ...env, NONIUS_CHROMIUM: await ensureChromium(say) });
+}
+
+/** The template is made anew: one of an earlier run may have been made by other migrations. */
+async function freshTemplate(cluster: Cluster): Promise<Record<string, string>> {
+	await dropDatabases(cluster, TEST_DATABASES);
+	await ensureDatabase(cluster, TEMPLATE);
+	return { TEST_DATABASE_URL: cluster.baseUrl, TEST_DATABASE_TEMPLATE: TEMPLATE };
 }
 
 function say(words: string): void {
 	console.log(`\n— ${words}`);
 }
 
-function run(argv: string[], env: Record<string, string> = {}): number {
+async function timed(argv: string[], env: Record<string, string> = {}): Promise<number> {
 	const began = Date.now();
-	const { status } = spawnSync(process.execPath, argv, { cwd: PROJECT_ROOT, stdio: ['ignore', 'inherit', 'inherit'], env: { ...process.env, FORCE_COLOR: '0', ...env } });
+	const colour: Record<string, string> = process.stdout.isTTY ? {} : { NO_COLOR: '1' };
+	const { status } = await run(process.execPath, argv, { env: { ...process.env, ...colour, ...env } });
 	console.log(`  ${((Date.now() - began) / 1000).toFixed(0)} s`);
-	return status ?? 1;
+	return status;
 }
 
-function step(tally: Tally, words: string, argv: string[]): void {
+async function step(tally: Tally, words: string, argv: string[]): Promise<void> {
 	say(words);
-	if (run(argv) === 0) tally.passed++;
+	if ((await timed(argv)) === 0) tally.passed++;
 	else tally.failed++;
 }
 
-function vitest(tally: Tally, project: 'unit' | 'integration', env: Record<string, string>): void {
-	say(project === 'unit' ? 'Unit tests' : 'Integration tests against PostgreSQL');
-	const report = join(dataFolder(), `vitest-${project}.json`);
-	rmSync(report, { force: true });
-	const status = run(['node_modules/vitest/vitest.mjs', 'run', '--project', project, '--reporter', 'default', '--reporter', 'json', '--outputFile.json', report], env);
-	const counts = existsSync(report) ? (JSON.parse(readFileSync(report, 'utf8')) as { numPassedTests: number; numFailedTests: number; numPendingTests: number; numTotalTests: number }) : null;
-	count(tally, status, counts && { passed: counts.numPassedTests, failed: counts.numFailedTests, skipped: counts.numPendingTests });
+async function vitest(tally: Tally, folder: string, project: 'unit' | 'integration', env: Record<string, string>): Promise<void> {
+	say(project === 'unit' ? 'Unit tests' : 'Integration and fault tests against PostgreSQL');
+	const report = freshReport(folder, `vitest-${project}.json`);
+	const status = await timed(['node_modules/vitest/vitest.mjs', 'run', '--project', project, '--reporter', 'default', '--reporter', 'json', '--outputFile.json', report], env);
+	addRun(tally, status, vitestCounts(report));
 }
 
-function playwright(tally: Tally, env: Record<string, string>): void {
+async function playwright(tally: Tally, folder: string, env: Record<string, string>): Promise<void> {
 	say('Journeys in the browser');
-	const report = join(dataFolder(), 'playwright.json');
-	rmSync(report, { force: true });
-	const status = run(['node_modules/@playwright/test/cli.js', 'test', '--reporter', 'list,json'], { ...env, PLAYWRIGHT_JSON_OUTPUT_NAME: report });
-	const counts = existsSync(report) ? (JSON.parse(readFileSync(report, 'utf8')) as { stats: { expected: number; unexpected: number; flaky: number; skipped: number } }).stats : null;
-	count(tally, status, counts && { passed: counts.expected, failed: counts.unexpected + counts.flaky, skipped: counts.skipped });
+	const report = freshReport(folder, 'playwright.json');
+	const status = await timed(['node_modules/@playwright/test/cli.js', 'test', '--reporter', 'list,json'], { ...env, PLAYWRIGHT_JSON_OUTPUT_NAME: report });
+	addRun(tally, status, playwrightCounts(report));
 }
 
-/** A run that failed without a failed test (a crash, no report) is one failure. */
-function count(tally: Tally, status: number, counts: Tally | null): void {
-	tally.passed += counts?.passed ?? 0;
-	tally.skipped += counts?.skipped ?? 0;
-	tally.failed += counts?.failed ?? 0;
-	if (!counts || (status !== 0 && counts.failed === 0)) tally.failed++;
+function freshReport(folder: string, name: string): string {
+	const file = join(folder, name);
+	rmSync(file, { force: true });
+	return file;
 }

@@ -1,15 +1,17 @@
 /** The real start command: killed the hard way, it starts again with nothing lost. */
 import { spawn, type ChildProcess } from 'node:child_process';
-import { existsSync, mkdtempSync, readFileSync, rmSync } from 'node:fs';
+import { chmodSync, existsSync, mkdtempSync, readFileSync, rmSync } from 'node:fs';
 import { get } from 'node:http';
 import { join } from 'node:path';
 import postgres from 'postgres';
 import { afterAll, beforeAll, describe, expect, test } from 'vitest';
 import { PROJECT_ROOT } from '../../src/cli/local/data-folder';
-import { freePort, startCluster } from '../../src/cli/local/postgres';
+import { freePort } from '../../src/cli/local/free-port';
+import { startCluster } from '../../src/cli/local/postgres';
 
-// Below /var/tmp, where the postgres user can go whatever the test runner's temporary folder is.
+// Below /var/tmp and open to enter, since the postgres user has to get there.
 const folder = mkdtempSync('/var/tmp/nonius-start-');
+chmodSync(folder, 0o755);
 let port: number;
 let running: ChildProcess | null = null;
 
@@ -67,7 +69,7 @@ beforeAll(async () => {
 });
 afterAll(async () => {
 	running?.kill('SIGKILL');
-	(await startCluster(join(folder, 'postgres'), () => {})).stop();
+	await (await startCluster(join(folder, 'postgres'), () => {})).stop();
 	rmSync(folder, { recursive: true, force: true });
 });
 

@@ -4,9 +4,9 @@ import { join } from 'node:path';
 import { OAuth2Server } from 'oauth2-mock-server';
 import { dataFolder } from '../../src/cli/local/data-folder';
 import { startMailCatcher } from '../../src/cli/local/mail-catcher';
-import { freePort } from '../../src/cli/local/postgres';
-import { startServer } from '../../src/cli/local/server';
-import { environmentOf } from '../../src/cli/start';
+import { freePort } from '../../src/cli/local/free-port';
+import { launchServer } from '../../src/cli/local/server';
+import { environmentOf } from '../../src/cli/local/server-environment';
 import { seedDemo } from '../../src/cli/seed';
 import { loadSettings } from '../../src/lib/server/settings';
 import { freshDatabase } from './database';
@@ -47,7 +47,8 @@ export default async function startApplication(): Promise<() => Promise<void>> {
 		NONIUS_DEMO: '1',
 		NONIUS_DATA: folder
 	});
-	const server = await startServer(environmentOf(settings), { quiet: true });
+	const server = launchServer(environmentOf(settings), { quiet: true });
+	await server.ready();
 	process.env.NONIUS_E2E_ORIGIN = settings.origin;
 	process.env.NONIUS_E2E_DATA = folder;
 	process.env.NONIUS_E2E_DATABASE_URL = database.url;

@@ -1,9 +1,10 @@
 /** A local stand-in for the hosted mail server: takes every mail over SMTP and keeps it in the data folder. */
-import { mkdirSync, writeFileSync } from 'node:fs';
+import { chmodSync, renameSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { simpleParser } from 'mailparser';
 import { SMTPServer } from 'smtp-server';
-import { freePort } from './postgres';
+import { makeFolder } from './data-folder';
+import { freePort } from './free-port';
 import type { CaughtMail } from '../../lib/server/mail/caught';
 
 export interface MailCatcher {
@@ -13,13 +14,15 @@ export interface MailCatcher {
 
 /** @param onMail told of every mail after it is kept */
 export async function startMailCatcher(folder: string, onMail: (mail: CaughtMail) => void = () => {}): Promise<MailCatcher> {
-	mkdirSync(folder, { recursive: true });
+	// The mails hold sign-in links: they are for whoever runs this alone.
+	chmodSync(makeFolder(folder, 0o700), 0o700);
 	const port = await freePort();
 	let count = 0;
 	const server = new SMTPServer({
 		authOptional: true,
 		disabledCommands: ['STARTTLS', 'AUTH'],
 		logger: false,
+		closeTimeout: 1000,
 		onData(stream, _session, done) {
 			simpleParser(stream).then(
 				(parsed) => {
@@ -27,7 +30,10 @@ export async function startMailCatcher(folder: string, onMail: (mail: CaughtMail
 					const to = (Array.isArray(parsed.to) ? parsed.to : parsed.to ? [parsed.to] : []).map((a) => a.text).join(', ');
 					const text = parsed.text ?? '';
 					const mail: CaughtMail = { at, to, subject: parsed.subject ?? '', text, link: /https?:\/\/\S+/.exec(text)?.[0] ?? null };
-					writeFileSync(join(folder, `${at.replaceAll(':', '-')}-${String(++count).padStart(4, '0')}.json`), JSON.stringify(mail, null, '\t'));
+					const file = join(folder, `${at.replaceAll(':', '-')}-${String(++count).padStart(4, '0')}.json`);
+					// Whoever lists the folder meanwhile finds whole mails only.
+					writeFileSync(`${file}.part`, JSON.stringify(mail, null, '\t'), { mode: 0o600 });
+					renameSync(`${file}.part`, file);
 					onMail(mail);
 					done();
 				},

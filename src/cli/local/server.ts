@@ -1,14 +1,16 @@
 /** Runs the built application as a child process that ends with us, however we end. */
-import { spawn, type ChildProcess } from 'node:child_process';
+import { spawn } from 'node:child_process';
 import { get } from 'node:http';
 import { join } from 'node:path';
+import { pathToFileURL } from 'node:url';
 import { PROJECT_ROOT } from './data-folder';
 import { StopSentence } from './sentence';
 
 export interface RunningServer {
-	process: ChildProcess;
-	/** Resolves when the server has ended by itself. */
-	ended: Promise<number | null>;
+	/** Resolves when the server has ended, with how: "exit status 1", "signal SIGKILL". */
+	ended: Promise<string>;
+	/** Waits until it answers. @throws StopSentence when it does not */
+	ready(): Promise<void>;
 	stop(): Promise<void>;
 }
 
@@ -24,32 +26,38 @@ function answers(address: string): Promise<boolean> {
 	});
 }
 
-/** Starts the server with these settings in its environment and waits until it answers. */
-export async function startServer(env: Record<string, string | undefined>, options: { quiet?: boolean } = {}): Promise<RunningServer> {
-	const child = spawn(process.execPath, ['--import', join(PROJECT_ROOT, 'src/cli/local/end-with-parent.mjs'), join(PROJECT_ROOT, 'build/index.js')], {
+/** A host to ask when the server listens on this one; the wildcards listen on loopback too. */
+function reachableHost(host: string): string {
+	if (host === '0.0.0.0') return '127.0.0.1';
+	if (host === '::') return '[::1]';
+	return host.includes(':') && !host.startsWith('[') ? `[${host}]` : host;
+}
+
+/**
+ * Starts the server with these settings in its environment. It can be stopped at once, also before it is ready.
+ */
+export function launchServer(env: Record<string, string | undefined>, options: { quiet?: boolean } = {}): RunningServer {
+	const endWithParent = pathToFileURL(join(PROJECT_ROOT, 'src/cli/local/end-with-parent.mjs')).href;
+	const child = spawn(process.execPath, ['--import', endWithParent, join(PROJECT_ROOT, 'build/index.js')], {
 		cwd: PROJECT_ROOT,
-		env: { ...env, NODE_ENV: 'production', SHUTDOWN_TIMEOUT: '5' },
+		env: { ...env, NODE_ENV: 'production', SHUTDOWN_TIMEOUT: '3' },
 		stdio: ['ignore', options.quiet ? 'ignore' : 'inherit', 'inherit', 'ipc']
 	});
-	const ended = new Promise<number | null>((done) => child.once('exit', (code) => done(code)));
-	const address = `http://${env.HOST === '0.0.0.0' ? '127.0.0.1' : (env.HOST ?? '127.0.0.1')}:${env.PORT}`;
-	const deadline = Date.now() + 60_000;
-	let gone = false;
-	ended.then(() => (gone = true));
-	for (;;) {
-		if (gone) throw new StopSentence(`The server ended before it answered. Is port ${env.PORT} taken? Set PORT to another one; its own words are above.`);
-		if (await answers(`${address}/healthz`)) break;
-		if (Date.now() > deadline) {
-			child.kill('SIGKILL');
-			throw new StopSentence(`The server did not answer on ${address} within a minute; its own words are above.`);
-		}
-		await new Promise((r) => setTimeout(r, 100));
-	}
+	const ended = new Promise<string>((done) => child.once('exit', (code, signal) => done(signal ? `signal ${signal}` : `exit status ${code}`)));
+	const hasEnded = () => child.exitCode !== null || child.signalCode !== null;
 	return {
-		process: child,
 		ended,
+		async ready() {
+			const address = `http://${reachableHost(env.HOST ?? '127.0.0.1')}:${env.PORT}`;
+			const deadline = Date.now() + 60_000;
+			while (!(await answers(`${address}/healthz`))) {
+				if (hasEnded()) throw new StopSentence('The server ended before it answered; its own words are above.');
+				if (Date.now() > deadline) throw new StopSentence(`The server did not answer on ${address} within a minute; its own words are above.`);
+				await new Promise((r) => setTimeout(r, 100));
+			}
+		},
 		async stop() {
-			if (gone) return;
+			if (hasEnded()) return;
 			child.kill('SIGTERM');
 			const late = setTimeout(() => child.kill('SIGKILL'), 8000);
 			await ended;

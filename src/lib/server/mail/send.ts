@@ -16,7 +16,8 @@ const transports = new Map<string, Transporter>();
 export async function sendMail(settings: Pick<Settings, 'smtpUrl' | 'mailFrom'>, mail: Mail): Promise<void> {
 	let transport = transports.get(settings.smtpUrl);
 	if (!transport) {
-		transport = nodemailer.createTransport(settings.smtpUrl);
+		// A mail server that says nothing must not keep a sign-in page waiting.
+		transport = nodemailer.createTransport({ url: settings.smtpUrl, connectionTimeout: 10_000, greetingTimeout: 10_000, socketTimeout: 20_000 });
 		transports.set(settings.smtpUrl, transport);
 	}
 	await transport.sendMail({ from: settings.mailFrom, ...mail });
