@@ -2,6 +2,7 @@
 import { spawn, type ChildProcess } from 'node:child_process';
 import { chmodSync, existsSync, mkdtempSync, readFileSync, rmSync } from 'node:fs';
 import { get } from 'node:http';
+import { createServer } from 'node:net';
 import { join } from 'node:path';
 import postgres from 'postgres';
 import { afterAll, beforeAll, describe, expect, test } from 'vitest';
@@ -23,9 +24,9 @@ interface Started {
 	ended: Promise<number | null>;
 }
 
-function start(env: Record<string, string> = {}): Started {
+function start(env: Record<string, string> = {}, [file, ...argv]: string[] = [process.execPath, BOOTSTRAP, 'start']): Started {
 	// Demo content is left out: what is tested here is that data stays, whoever made it.
-	const child = spawn(process.execPath, [BOOTSTRAP, 'start'], {
+	const child = spawn(file, argv, {
 		cwd: PROJECT_ROOT,
 		env: { ...process.env, NODE_ENV: '', NONIUS_DATA: folder, PORT: String(port), NONIUS_DEMO: '0', DATABASE_URL: '', ...env },
 		stdio: ['ignore', 'pipe', 'pipe']
@@ -82,7 +83,39 @@ describe('the start command', { timeout: 180_000 }, () => {
 		first.process.kill('SIGINT');
 		expect(await first.ended).toBe(0);
 		expect(await answers()).toBe(false);
+		expect(existsSync(join(folder, 'postgres/cluster/PG_VERSION'))).toBe(true);
 		expect(existsSync(join(folder, 'postgres/cluster/postmaster.pid'))).toBe(false);
+	});
+
+	test('stopped in the middle of starting leaves nothing running', async () => {
+		const first = start();
+		await until(() => existsSync(join(folder, 'start.pid')), first);
+		first.process.kill('SIGTERM');
+		expect(await first.ended).toBe(0);
+		expect(existsSync(join(folder, 'postgres/cluster/postmaster.pid'))).toBe(false);
+		expect(existsSync(join(folder, 'start.pid'))).toBe(false);
+	});
+
+	test('started twice in the same moment runs once, and the other says so', async () => {
+		const both = [start(), start()];
+		const loser = await Promise.race(both.map((one) => one.ended.then(() => one)));
+		const winner = both.find((one) => one !== loser) ?? both[0];
+		expect(loser.output()).toContain('already running on this data folder');
+		expect(loser.process.exitCode).toBe(1);
+		await ready(winner);
+		winner.process.kill('SIGINT');
+		expect(await winner.ended).toBe(0);
+	});
+
+	test('the shell that npm started us with is killed: everything is stopped, and a new start gets the folder', async () => {
+		const first = start({ npm_lifecycle_event: 'start' }, ['sh', '-c', `"${process.execPath}" "${BOOTSTRAP}" start; true`]);
+		await ready(first);
+		first.process.kill('SIGKILL');
+		const second = start();
+		await ready(second);
+		expect(await answers()).toBe(true);
+		second.process.kill('SIGINT');
+		expect(await second.ended).toBe(0);
 	});
 
 	test('killed by kill -9, takes its server along and starts again with nothing lost', async () => {
@@ -111,17 +144,37 @@ describe('the start command', { timeout: 180_000 }, () => {
 		await ready(started);
 		expect((await withDatabase((sql) => sql`select slug from team order by slug`)).map((r) => r.slug)).toEqual(['kept-bench', 'second-bench']);
 
-		const second = start();
-		expect(await second.ended).toBe(1);
-		expect(second.output()).toContain('already running on this data folder');
 		started.process.kill('SIGINT');
 		await started.ended;
 	});
 
+	test('the database is killed while people work: it comes back under the running server', async () => {
+		const started = start();
+		await ready(started);
+		const pid = Number(readFileSync(join(folder, 'postgres/cluster/postmaster.pid'), 'utf8').split('\n')[0]);
+		process.kill(pid, 'SIGKILL');
+		await until(() => started.output().includes('The database is back'), started);
+		await until(answers, started);
+		expect((await withDatabase((sql) => sql`select slug from team order by slug`)).map((r) => r.slug)).toEqual(['kept-bench', 'second-bench']);
+		started.process.kill('SIGINT');
+		expect(await started.ended).toBe(0);
+	});
+
+	test('a port that another program has is named before anything is started', async () => {
+		const other = createServer();
+		await new Promise<void>((done) => other.listen(port, '127.0.0.1', done));
+		const started = start();
+		expect(await started.ended).toBe(1);
+		expect(started.output()).toContain(`Port ${port} on 127.0.0.1 is taken`);
+		await new Promise((done) => other.close(done));
+	});
+
 	test.each([
 		[{ DATABASE_URL: 'postgres://nobody:x@127.0.0.1:1/none' }, 'SMTP_URL is not set'],
-		[{ DATABASE_URL: 'postgres://nobody:x@127.0.0.1:1/none', SMTP_URL: 'smtp://127.0.0.1:25', ORIGIN: 'https://nonius.example', AUTH_SECRET: 'x'.repeat(40) }, 'does not answer'],
-		[{ PORT: 'many' }, 'PORT must be']
+		[{ DATABASE_URL: 'postgres://nobody:x@127.0.0.1:1/none', SMTP_URL: 'smtp://127.0.0.1:25', ORIGIN: 'https://nonius.example', AUTH_SECRET: 'x'.repeat(40) }, 'cannot be used (connect ECONNREFUSED 127.0.0.1:1)'],
+		[{ PORT: 'many' }, 'PORT must be'],
+		[{ HOST: '0.0.0.0' }, 'ORIGIN is not set'],
+		[{ NONIUS_DEMO: '1', ORIGIN: 'https://nonius.example' }, 'works on loopback only']
 	])('a missing or wrong setting stops it with one sentence', async (env, sentence) => {
 		const started = start(env as Record<string, string>);
 		expect(await started.ended).toBe(1);
