@@ -195,17 +195,20 @@ async function reachable(wanted: string, say: (words: string) => void): Promise<
 }
 
 function mustBeOurs(folder: string): string {
-	if (statSync(folder).uid !== process.getuid?.())
-		throw new StopSentence(`The database in ${folder} belongs to another user. Start Nonius as the user that made it, or set NONIUS_DATA to another folder.`);
+	if (statSync(folder).uid !== serverUid()) throw new StopSentence(anothersCluster(folder));
 	chmodSync(folder, 0o700);
 	return folder;
 }
 
 function prepared(folder: string): string {
+	const cluster = join(folder, 'cluster');
+	if (existsSync(cluster) && statSync(cluster).uid !== serverUid()) throw new StopSentence(anothersCluster(folder));
 	own(folder);
 	chmodSync(folder, 0o700);
 	return folder;
 }
+
+const anothersCluster = (folder: string) => `The database in ${folder} belongs to another user. Start Nonius as the user that made it, or set NONIUS_DATA to another folder.`;
 
 async function canReach(folder: string): Promise<boolean> {
 	return (await run('runuser', ['-u', 'postgres', '--', 'test', '-x', dirname(folder)], { cwd: '/', stdout: 'ignore', keepWords: true })).status === 0;
