@@ -6,7 +6,7 @@ import { readFileSync, existsSync, readdirSync } from 'node:fs';
 import { join } from 'node:path';
 import AxeBuilder from '@axe-core/playwright';
 import { expect, test, type Page } from '@playwright/test';
-import { focusBench, offsetOf, origin, saved, signInAs } from './steps';
+import { focusBench, offsetOf, openBox, origin, saved, signInAs } from './steps';
 
 const STUDY = 'autumn-trail-study';
 const SAMPLE = join(import.meta.dirname, '../../fixtures/sample-session');
@@ -124,7 +124,7 @@ test('from files on disk to reviewed figures and exported pairs, by keyboard', a
 		await expect(page.getByRole('option', { name: /Motion artefact/ })).toHaveCount(1);
 		await page.getByRole('option', { name: /Motion artefact/ }).click();
 		await focusBench(page);
-		await page.keyboard.press('j');
+		await openBox(page, 'j');
 		await page.keyboard.type('Shook the wrist here');
 		await page.keyboard.press('Enter');
 		await saved(page);
@@ -143,7 +143,7 @@ test('from files on disk to reviewed figures and exported pairs, by keyboard', a
 
 	await test.step('hand to review', async () => {
 		await focusBench(page);
-		await page.keyboard.press('Shift+Enter');
+		await openBox(page, 'Shift+Enter');
 		await page.keyboard.type('Please look at the shaking');
 		await page.keyboard.press('Enter');
 		await expect(page.getByText('In review').first()).toBeVisible();
@@ -164,7 +164,7 @@ test('from files on disk to reviewed figures and exported pairs, by keyboard', a
 		await teammate.goto(`${origin()}/studies/${STUDY}/sessions/S25`);
 		await expect(teammate.getByText('Please look at the shaking')).toBeVisible();
 		await focusBench(teammate);
-		await teammate.keyboard.press('Shift+V');
+		await openBox(teammate, 'Shift+V');
 		await teammate.keyboard.type('Is the end of the tag right?');
 		await teammate.keyboard.press('Enter');
 		await expect(teammate.getByText('Handed back').first()).toBeVisible();
@@ -172,13 +172,13 @@ test('from files on disk to reviewed figures and exported pairs, by keyboard', a
 		await page.reload();
 		await expect(page.getByText('Is the end of the tag right?')).toBeVisible();
 		await focusBench(page);
-		await page.keyboard.press('Shift+Enter');
+		await openBox(page, 'Shift+Enter');
 		await page.keyboard.press('Enter');
 		await expect(page.getByText('In review').first()).toBeVisible();
 
 		await teammate.reload();
 		await focusBench(teammate);
-		await teammate.keyboard.press('v');
+		await openBox(teammate, 'v');
 		await teammate.keyboard.press('Enter');
 		await expect(teammate.getByText('Reviewed').first()).toBeVisible();
 		await context.close();

@@ -51,3 +51,9 @@ export async function offsetOf(page: Page): Promise<number> {
 export async function saved(page: Page): Promise<void> {
 	await expect(page.getByRole('banner').getByRole('status')).toHaveText(/^Saved/);
 }
+
+/** Opens a box by its key and waits until it takes what is typed, as a person does. */
+export async function openBox(page: Page, key: string): Promise<void> {
+	await page.keyboard.press(key);
+	await expect(page.getByRole('dialog').getByRole('textbox')).toBeFocused();
+}
