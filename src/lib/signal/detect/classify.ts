@@ -1,6 +1,7 @@
 /** What a stretch of disagreement is: asked in a fixed order, the sharper marks first. */
 import type { CadenceBand } from './cadence-seconds';
 import type { CommonSeconds } from './common-seconds';
+import { explanations } from './explained';
 import { prominentPeaks, type Peak } from './peak-prominence';
 import { asScore, rising, type Proposal, type ProposedKind } from './proposal';
 import { coveredShare, disagreeingRegions, medianOf, type Region } from './regions';
@@ -12,19 +13,10 @@ const ONSET_LONGEST_S = 260;
 const ONSET_BACK_INSIDE_S = 12;
 const SPIKE_LONGEST_S = 6;
 const SPIKE_STEP_BPM = 12;
-const HALF_RATIO = [0.42, 0.58] as const;
-const DOUBLE_RATIO = [1.75, 2.25] as const;
-const RATIO_SHARE = 0.5;
-const RATIO_SHORTEST_S = 10;
-/** Level of the region against the level before it. */
-const HALF_DROP = 0.78;
-const DOUBLE_RISE = 1.3;
-const BEFORE_S = 30;
-const LOCK_NEAR_BPM = 5;
-const LOCK_SHARE = 0.6;
-const LOCK_SHORTEST_S = 20;
+const SOURCE_SHORTEST_S = 8;
+const SOURCE_SHARE = 0.65;
+const LOCK_SHORTEST_S = 12;
 const LOCK_MERGE_S = 60;
-const LOCK_MULTIPLES = [1, 0.5, 2] as const;
 const PEAK_PROMINENCE_BPM = 12;
 const PEAK_AROUND_S = 15;
 const MOTION_MERGE_S = 15;
@@ -37,14 +29,14 @@ interface Found extends Region {
 
 /** @param taken seconds that are explained already: frozen values */
 export function classifiedRegions(common: CommonSeconds, band: CadenceBand | null, taken: readonly Region[]): Proposal[] {
-	const regions = disagreeingRegions(common.excess).filter((r) => coveredShare(r, taken) < 0.5);
+	const regions = disagreeingRegions(common.excess, common.read).filter((r) => coveredShare(r, taken) < 0.5);
 	const peaks = prominentPeaks(common.expected, PEAK_PROMINENCE_BPM);
 	const onset = onsetOf(common, band, regions);
 	const found: Found[] = onset ? [onset] : [];
 	for (const region of regions) {
 		if (onset && region.from < onset.to) continue;
 		found.push(
-			spike(common, region) ?? ratioKind(common, band, region) ?? lock(common, band, region) ?? missedPeak(common, peaks, region) ?? motion(common, region)
+			spike(common, region) ?? otherSource(common, band, region) ?? missedPeak(common, peaks, region) ?? motion(common, region)
 		);
 	}
 	return merged(found).flatMap((f): Proposal[] =>
@@ -60,7 +52,7 @@ function onsetOf(common: CommonSeconds, band: CadenceBand | null, regions: reado
 	for (let k = begin + 1; k < regions.length && regions[k].from - region.to <= ONSET_BACK_INSIDE_S; k++) region.to = regions[k].to;
 	const lengthS = region.to - region.from;
 	if (lengthS < ONSET_SHORTEST_S || region.from > 90) return null;
-	if (region.from > 8 && (ratioKind(common, band, region) ?? lock(common, band, region))) return null;
+	if (region.from > 8 && otherSource(common, band, region)) return null;
 	region.to = Math.min(region.to, region.from + ONSET_LONGEST_S);
 	// Where the reference cannot be compared at first, the wearable was no better then.
 	if (region.from <= first + 2 && first < 120) region.from = 0;
@@ -86,68 +78,27 @@ function spike(common: CommonSeconds, region: Region): Found | null {
 	};
 }
 
-function ratioKind(common: CommonSeconds, band: CadenceBand | null, region: Region): Found | null {
+/** Half rate, double rate or cadence lock: what the device would show with that source, against what it shows. */
+function otherSource(common: CommonSeconds, band: CadenceBand | null, region: Region): Found | null {
 	const lengthS = region.to - region.from;
-	if (lengthS < RATIO_SHORTEST_S) return null;
-	const ratios: number[] = [];
-	for (let i = region.from; i < region.to; i++) ratios.push(common.wearable[i] / common.expected[i]);
-	const within = (low: number, high: number) => ratios.filter((r) => r >= low && r <= high).length / lengthS;
-	const half = within(...HALF_RATIO);
-	const double = within(...DOUBLE_RATIO);
-	if (half < RATIO_SHARE && double < RATIO_SHARE) return null;
-	const before = levelBefore(common, region);
-	const level = medianOf(common.wearable.subarray(region.from, region.to));
-	const isHalf = half >= RATIO_SHARE;
-	if (isHalf ? !(level < HALF_DROP * before) : !(level > DOUBLE_RISE * before)) return null;
-	// Cadence may stand at half or twice the heart rate by chance: then the course decides.
-	const locked = lock(common, band, region);
-	if (locked && misfitToCadence(common, band, region) < misfitToRatio(common, region, isHalf ? 0.5 : 2)) return null;
-	return {
-		...region,
-		kind: isHalf ? 'half-rate' : 'double-rate',
-		score: asScore(0.3 + 0.5 * (isHalf ? half : double) + 0.2 * rising(lengthS, RATIO_SHORTEST_S, 20)),
-		evidence: `Reads ${isHalf ? 'half' : 'twice'} of the reference for ${duration(lengthS)}: ${whole(level)} where the reference shows ${whole(medianOf(common.expected.subarray(region.from, region.to)))}.`
-	};
-}
-
-/** Median size of what is left when the wearable is taken for a multiple of the reference, bpm. */
-function misfitToRatio(common: CommonSeconds, region: Region, ratio: number): number {
-	const left: number[] = [];
-	for (let i = region.from; i < region.to; i++) left.push(Math.abs(common.wearable[i] - ratio * common.expected[i]));
-	return medianOf(left);
-}
-
-function misfitToCadence(common: CommonSeconds, band: CadenceBand | null, region: Region): number {
-	if (!band) return Infinity;
-	return Math.min(
-		...LOCK_MULTIPLES.map((multiple) => {
-			const left: number[] = [];
-			for (let i = region.from; i < region.to; i++) left.push(Math.abs(common.wearable[i] - (multiple * (band.low[i] + band.high[i])) / 2));
-			return medianOf(left);
-		})
-	);
-}
-
-function lock(common: CommonSeconds, band: CadenceBand | null, region: Region): Found | null {
-	const lengthS = region.to - region.from;
-	if (!band || lengthS < LOCK_SHORTEST_S) return null;
-	let best = { near: 0, multiple: 1 };
-	for (const multiple of LOCK_MULTIPLES) {
-		let near = 0;
-		for (let i = region.from; i < region.to; i++) {
-			const w = common.wearable[i];
-			if (w >= multiple * band.low[i] - LOCK_NEAR_BPM && w <= multiple * band.high[i] + LOCK_NEAR_BPM) near++;
-		}
-		if (near > best.near) best = { near, multiple };
+	if (lengthS < SOURCE_SHORTEST_S) return null;
+	const [best] = explanations(common, band, region);
+	if (!best || best.share < SOURCE_SHARE || best.source === 'flattened') return null;
+	const level = whole(medianOf(common.wearable.subarray(region.from, region.to)));
+	const heart = whole(medianOf(common.expected.subarray(region.from, region.to)));
+	const score = asScore(0.1 + 0.6 * best.share + 0.3 * rising(lengthS, SOURCE_SHORTEST_S, 25));
+	if (best.source === 'half' || best.source === 'double') {
+		const word = best.source === 'half' ? 'half' : 'twice';
+		return { ...region, kind: `${best.source}-rate`, score, evidence: `Reads ${word} of the reference for ${duration(lengthS)}: ${level} where the reference shows ${heart}.` };
 	}
-	if (best.near < LOCK_SHARE * lengthS) return null;
-	const level = medianOf(band.low.subarray(region.from, region.to));
-	const of = best.multiple === 1 ? 'cadence' : best.multiple === 2 ? 'twice the cadence' : 'half of the cadence';
+	if (lengthS < LOCK_SHORTEST_S || !band) return null;
+	const multiple = best.source === 'cadence' ? 1 : best.source === 'twice cadence' ? 2 : 0.5;
+	const of = multiple === 1 ? 'cadence' : multiple === 2 ? 'twice the cadence' : 'half of the cadence';
 	return {
 		...region,
 		kind: 'cadence-lock',
-		score: asScore(0.2 + 0.5 * (best.near / lengthS) + 0.3 * rising(lengthS, LOCK_SHORTEST_S, 30)),
-		evidence: `Stays within ${LOCK_NEAR_BPM} bpm of ${of} (${whole(level)} a minute) for ${duration(best.near)} while the reference ${course(common.expected[region.from], common.expected[region.to - 1])}.`
+		score,
+		evidence: `Stays within ${whole(Math.max(2, best.misfitBpm))} bpm of ${of} (${whole(multiple * medianOf(band.low.subarray(region.from, region.to)))} a minute) for most of ${duration(lengthS)} while the reference ${course(common.expected[region.from], common.expected[region.to - 1])}.`
 	};
 }
 
@@ -187,11 +138,6 @@ function largest(common: CommonSeconds, region: Region): number {
 	for (let i = region.from; i < region.to; i++) most = Math.max(most, Math.abs(common.wearable[i] - common.expected[i]) || 0);
 	return most;
 }
-
-const levelBefore = (common: CommonSeconds, region: Region): number => {
-	const level = medianOf(common.wearable.subarray(Math.max(0, region.from - BEFORE_S), Math.max(0, region.from - 2)));
-	return Number.isNaN(level) ? medianOf(common.expected.subarray(region.from, region.to)) : level;
-};
 
 /** Pieces of one lock, and of one shaking, are one. */
 function merged(found: Found[]): Found[] {

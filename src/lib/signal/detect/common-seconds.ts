@@ -2,11 +2,13 @@
 import type { Trace } from '../../formats/recording';
 import { secondGrid, type SecondGrid } from '../second-grid';
 import type { ClockMapping } from './proposal';
-import { responseLike } from './response-like';
+import { moved, responseLike, type Smoother } from './response-like';
 import { unsoundSeconds } from './sound-reference';
 
 export const LOWEST_BPM = 30;
 export const HIGHEST_BPM = 230;
+/** Unsound seconds of the reference that a straight line bridges, s. */
+const LONGEST_HOLE_S = 12;
 /** The wearable may stand anywhere within what the reference shows this many seconds around, s. */
 const ENVELOPE_HALF_S = 6;
 
@@ -18,8 +20,11 @@ export interface CommonSeconds {
 	wearable: Float64Array;
 	/** Sound reference, smoothed and delayed as the wearable is; NaN where there is none. */
 	expected: Float64Array;
-	/** Sound reference as it is. */
-	reference: Float64Array;
+	/** Sound reference without smoothing, delayed so that `smoother` makes the expected readings of it. */
+	source: Float64Array;
+	smoother: Smoother;
+	/** 1 at seconds that hold a reading; the others are bridged. */
+	read: Uint8Array;
 	/** How far the wearable stands outside of what the expected value passes through around; 0 inside, NaN unknown. */
 	excess: Float64Array;
 	toReferenceS: (wearableS: number) => number;
@@ -45,13 +50,21 @@ export function commonSeconds(reference: Pick<Trace, 'tS' | 'value'>, wearable: 
 	for (let i = 0; i < sound.length; i++) if (unsound[i]) sound[i] = NaN;
 	const maps = clockMaps(wearable, mapping);
 	const onWearable = (column: Float64Array) => resampled(column, strap.startS, device, maps.toReferenceS);
-	const shown = responseLike(bridged(sound, 12), device.value, onWearable);
+	const filled = bridged(sound, LONGEST_HOLE_S);
+	const { column: shown, smoother, lagS } = responseLike(filled, device.value, onWearable);
+	const read = new Uint8Array(device.value.length);
+	for (let i = 0; i < wearable.tS.length; i++) {
+		const second = Math.round(wearable.tS[i]) - device.startS;
+		if (second >= 0 && second < read.length && wearable.value[i] > LOWEST_BPM && wearable.value[i] < HIGHEST_BPM) read[second] = 1;
+	}
 	return {
 		startS: device.startS,
 		length: device.value.length,
 		wearable: device.value,
 		expected: shown,
-		reference: onWearable(sound),
+		source: moved(onWearable(filled), lagS),
+		smoother,
+		read,
 		excess: outsideOf(device.value, shown, ENVELOPE_HALF_S),
 		...maps,
 		strap: { ...strap, unsound }

@@ -9,11 +9,12 @@ const SHORTEST_S = 12;
 /** The reference must have moved by this much meanwhile, bpm, and by this much for every second of the hold. */
 const LEAST_MOVE_BPM = 4;
 const MOVE_BPM_PER_S = 0.06;
-/** The value must stand this far off at some time, or leap by this much when it comes free, bpm. */
-const OFF_BPM = 4;
-const LEAP_BPM = 3;
-/** A hold of this length needs less: steady work does not stand on one whole number for so long, s. */
+/** The value must stand this far off at some time, bpm; less where it is long: steady work does not stand on one whole number for a minute. */
+const OFF_BPM = 4.5;
+const LONG_OFF_BPM = 3;
 const LONG_S = 60;
+/** At its start the value is right within this, or it leaps by as much when it comes free, bpm. */
+const START_BPM = 6;
 /** Readings further apart than this break a hold, s. */
 const LONGEST_STEP_S = 10;
 
@@ -46,12 +47,10 @@ function judged(common: CommonSeconds, level: number, startS: number, endS: numb
 	let high = -Infinity;
 	let off = 0;
 	let first = NaN;
-	let last = NaN;
 	for (let i = from; i < to; i++) {
 		const e = common.expected[i];
 		if (Number.isNaN(e)) continue;
 		if (Number.isNaN(first)) first = e;
-		last = e;
 		if (e < low) low = e;
 		if (e > high) high = e;
 		off = Math.max(off, Math.abs(e - level));
@@ -60,7 +59,9 @@ function judged(common: CommonSeconds, level: number, startS: number, endS: numb
 	const move = high - low;
 	if (!(move >= Math.max(LEAST_MOVE_BPM, MOVE_BPM_PER_S * Math.min(lengthS, LONG_S)))) return null;
 	const leap = Math.abs(next - level) || 0;
-	if (lengthS < LONG_S && off < OFF_BPM && leap < LEAP_BPM) return null;
+	if (off < (lengthS < LONG_S ? OFF_BPM : LONG_OFF_BPM)) return null;
+	// A hold bridges a bad signal with the last good value. One that is wrong from its first second is a level of another fault.
+	if (Math.abs(level - first) > START_BPM && leap < START_BPM) return null;
 	return {
 		from,
 		to,

@@ -5,10 +5,10 @@ import { runsOf } from './regions';
 import { duration } from './words';
 
 /** Unsound pieces this close together are one fault, s. */
-const BRIDGE_S = 45;
+const BRIDGE_S = 75;
 const LEAST_SECONDS = 3;
 /** A fault that begins this soon after the first reading began with it: dry electrodes. */
-const FROM_THE_START_S = 20;
+const FROM_THE_START_S = 45;
 /** A wearable that takes the same leap speaks for the heart (a recorder's gap, a fast start), bpm. */
 const SAME_LEVEL_BPM = 8;
 
@@ -20,9 +20,9 @@ export function referenceFaults(common: CommonSeconds): Proposal[] {
 		let alike = 0;
 		let compared = 0;
 		let largestLeap = 0;
-		for (let i = run.from; i < run.to; i++) {
+		for (let i = run.from; i <= run.to && i < strap.value.length; i++) {
 			if (i > 0) largestLeap = Math.max(largestLeap, Math.abs(strap.value[i] - strap.value[i - 1]) || 0);
-			if (!strap.unsound[i]) continue;
+			if (i === run.to || !strap.unsound[i]) continue;
 			unsound++;
 			const k = Math.round(toWearableS(strap.startS + i)) - common.startS;
 			const w = common.wearable[k];

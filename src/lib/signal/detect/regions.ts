@@ -13,13 +13,20 @@ export const GROW_BPM = 4;
 /** Seconds back inside that do not end it. */
 const BRIDGE_S = 6;
 
-export function disagreeingRegions(excess: Float64Array): Region[] {
+/** @param read 1 at seconds with a reading: what is bridged between readings makes no region longer */
+export function disagreeingRegions(excess: Float64Array, read: Uint8Array): Region[] {
 	const regions: Region[] = [];
 	let from = -1;
 	let last = -1;
 	let seeded = false;
 	const close = () => {
-		if (from >= 0 && seeded) regions.push({ from, to: last + 1 });
+		if (from >= 0 && seeded) {
+			let a = from;
+			let b = last;
+			while (a < b && !read[a]) a++;
+			while (b > a && !read[b]) b--;
+			regions.push({ from: a, to: b + 1 });
+		}
 		from = -1;
 		seeded = false;
 	};

@@ -1,7 +1,13 @@
 /** The reference as the wearable would show it: smoothed and delayed as the wearable's readings are where they are sound. */
 
+/** How a device smooths: moving average, then first order; its delay is within `lagS` or comes by the smoothing itself. */
+export interface Smoother {
+	tauS: number;
+	windowS: number;
+}
+
 /** Smoothers of the bank: first-order time constants and moving-average windows, s. */
-const BANK: readonly { tauS: number; windowS: number }[] = [
+const BANK: readonly Smoother[] = [
 	{ tauS: 0, windowS: 0 },
 	{ tauS: 3, windowS: 0 },
 	{ tauS: 6, windowS: 0 },
@@ -22,19 +28,28 @@ const STRIDE_S = 5;
 /** Fewer common seconds than this do not tell one smoother from another. */
 const LEAST_SECONDS = 120;
 
+export interface Expected {
+	/** Expected readings on the wearable's seconds. */
+	column: Float64Array;
+	smoother: Smoother;
+	/** What the column was moved by after smoothing, s; positive = later. */
+	lagS: number;
+}
+
 /**
  * Chooses smoother and residual delay by the smallest bounded loss mean e²/(e² + 25).
  * @param sound reference on its own seconds, bpm; NaN where unsound
  * @param wearable readings on the wearable's seconds
  * @param onWearable puts a column of the reference's seconds on the wearable's
- * @returns expected readings on the wearable's seconds; the plain reference where there is too little to choose by
+ * @returns expected readings on the wearable's seconds, and how they came about; the plain reference where there is too little to choose by
  */
-export function responseLike(sound: Float64Array, wearable: Float64Array, onWearable: (column: Float64Array) => Float64Array): Float64Array {
+export function responseLike(sound: Float64Array, wearable: Float64Array, onWearable: (column: Float64Array) => Float64Array): Expected {
 	const plain = onWearable(sound);
-	let best = { loss: lossAt(plain, wearable, 0), column: plain, lagS: 0 };
-	if (!Number.isFinite(best.loss)) return plain;
-	for (const { tauS, windowS } of BANK) {
-		const column = tauS === 0 && windowS === 0 ? plain : onWearable(firstOrder(movingAverage(sound, windowS), tauS));
+	let best = { loss: lossAt(plain, wearable, 0), column: plain, lagS: 0, smoother: BANK[0] };
+	if (!Number.isFinite(best.loss)) return { column: plain, lagS: 0, smoother: BANK[0] };
+	for (const smoother of BANK) {
+		const { tauS, windowS } = smoother;
+		const column = tauS === 0 && windowS === 0 ? plain : onWearable(smoothedLike(sound, smoother));
 		const delayS = Math.round(tauS + windowS / 2);
 		let lagS = 0;
 		let loss = Infinity;
@@ -52,9 +67,9 @@ export function responseLike(sound: Float64Array, wearable: Float64Array, onWear
 			at(middle - step);
 			at(middle + step);
 		}
-		if (loss < best.loss * 0.995) best = { loss, column, lagS };
+		if (loss < best.loss * 0.995) best = { loss, column, lagS, smoother };
 	}
-	return best.lagS === 0 ? best.column : moved(best.column, best.lagS);
+	return { ...best, column: best.lagS === 0 ? best.column : moved(best.column, best.lagS) };
 }
 
 /** Mean bounded loss with the column moved `lag` seconds later. */
@@ -70,7 +85,10 @@ function lossAt(column: Float64Array, wearable: Float64Array, lag: number): numb
 	return n * STRIDE_S < LEAST_SECONDS ? Infinity : sum / n;
 }
 
-function moved(column: Float64Array, lag: number): Float64Array {
+/** A column as a device with this smoother shows it; begins anew after a hole. */
+export const smoothedLike = (value: Float64Array, { tauS, windowS }: Smoother): Float64Array => firstOrder(movingAverage(value, windowS), tauS);
+
+export function moved(column: Float64Array, lag: number): Float64Array {
 	const out = new Float64Array(column.length).fill(NaN);
 	for (let i = 0; i < out.length; i++) if (i - lag >= 0 && i - lag < column.length) out[i] = column[i - lag];
 	return out;
